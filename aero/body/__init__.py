@@ -12,6 +12,7 @@ from aero.body.shapes import (
     Shape,
     Sphere,
     SphereCone,
+    build_shape,
     dimensions,
 )
 from aero.body.surface import (
@@ -41,6 +42,7 @@ __all__ = [
     "Vehicle",
     "accommodation",
     "accommodation_uncertainty",
+    "build_shape",
     "dimensions",
     "oxygen_coverage",
     "read_vehicle",

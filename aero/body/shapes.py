@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from abc import ABC, abstractmethod
+from collections.abc import Mapping
 from dataclasses import dataclass, field, fields
 from typing import TYPE_CHECKING, ClassVar
 
@@ -12,6 +13,7 @@ import numpy as np
 from aero.arrays import Floats
 from aero.body import facets as see
 from aero.body.facets import Facets, Panels
+from aero.errors import InputError, choose
 
 BODY_CLASSES = ("sphere", "cylinder", "blunt-cone", "slender", "flat-plate", "box")
 """Keys of the default bridging and of the continuum uncertainty."""
@@ -424,3 +426,51 @@ def dimensions(kind: type[Shape]) -> dict[str, str]:
     {'half_angle': 'angle', 'base_radius': 'length'}
     """
     return {item.name: str(item.metadata["dimension"]) for item in fields(kind)}
+
+
+def build_shape(
+    kind: str,
+    sizes: Mapping[str, float],
+    *,
+    source: str | None = None,
+    flags: Mapping[str, str] | None = None,
+) -> Shape:
+    """Return a shape from its kind and dimensions as a user gave them.
+
+    Parameters
+    ----------
+    kind : str
+        A key of `SHAPES`.
+    sizes : mapping of str to float [m], [rad]
+    source : str, optional
+        Where they stand, for the message.
+    flags : mapping of str to str, optional
+        What the user calls each dimension.
+
+    Raises
+    ------
+    InputError
+        If the kind is unknown, a dimension is missing or does not belong to it, or they do not fit.
+
+    Examples
+    --------
+    >>> build_shape("sphere", {"diameter": 1.0})
+    Sphere(diameter=1.0)
+    >>> build_shape("cone", {"diameter": 1.0})
+    Traceback (most recent call last):
+    aero.errors.InputError: a cone has no diameter; its dimensions: half_angle, base_radius.
+    """
+    built = SHAPES[choose(kind, SHAPES, "shape kind", source=source)]
+    wanted = dimensions(built)
+    called = dict(zip(wanted, wanted, strict=True)) | dict(flags or {})
+    listed = f"its dimensions: {', '.join(called[name] for name in wanted)}"
+    for name in sizes:
+        if name not in wanted:
+            raise InputError(f"a {kind} has no {called.get(name, name)}", source=source, remedy=listed)
+    missing = [called[name] for name in wanted if name not in sizes]
+    if missing:
+        raise InputError(f"a {kind} needs {' and '.join(missing)}", source=source, remedy=f"add {missing[0]}")
+    try:
+        return built(**sizes)
+    except ValueError as error:
+        raise InputError(f"the {kind} cannot be built: {error}", source=source, remedy=listed) from None

@@ -16,10 +16,14 @@ from aero.body.surface import OXYGEN_COVERAGE, Surface
 from aero.errors import InputError
 from aero.units import split_header
 
-BRIDGED = ("drag", "lift", "heating")
-"""Coefficients that [bridging] may override."""
-BRIDGE_NUMBERS = ("centre", "width", "offset", "slope", "exponent", "centre_sigma", "width_sigma")
-"""Numbers an override may hold; their meaning belongs to the bridging function that is named."""
+_OF_FORCE = ("centre", "width", "centre_sigma", "width_sigma", "continuum_sigma", "continuum_above")
+BRIDGED: dict[str, tuple[tuple[str, ...], tuple[str, ...]]] = {
+    "drag": (("function", "variable"), _OF_FORCE),
+    "lift": (("function", "variable"), _OF_FORCE),
+    "heating": ((), ("exponent", "sigma")),
+}
+"""Coefficient that [bridging] may override -> (keys of text, keys of numbers)."""
+POSITIVE = ("centre", "width", "exponent")
 AREA_MISMATCH = 0.1  # relative; reference and frontal area further apart than this earn a note (judgement)
 
 
@@ -45,8 +49,7 @@ class Vehicle:
         Where the trajectory states none.
     continuum : ContinuumTable or None
     bridging : dict
-        Coefficient ("drag", "lift", "heating") -> dict with any of "function", "variable" (text) and the
-        numbers of `BRIDGE_NUMBERS`.
+        Coefficient -> the keys of `BRIDGED` that the file gives; their meaning belongs to the bridge.
     heating_nose_radius : float or None [m]
         `[heating] nose_radius`, where it is not the shape's.
     source : str
@@ -82,7 +85,12 @@ class Vehicle:
         return self.shape.body_class if self.shape is not None else None
 
     @property
-    def bridging_length(self) -> float:
+    def states_nose_radius(self) -> bool:
+        """Whether the radius for heating was stated apart from the shape."""
+        return self.heating_nose_radius is not None
+
+    @property
+    def length_across(self) -> float:
         """Length across the flow that bridging is scaled with [m]: the shape's, else the reference length."""
         return self.shape.length_across if self.shape is not None else self.reference_length
 
@@ -221,7 +229,7 @@ def _shape(top: Table) -> Shape | None:
     try:
         return SHAPES[kind](**sizes)
     except ValueError as error:
-        top.fail("shape", f"cannot be built: {error}", "mend the dimensions")
+        table.fail("kind", f"is '{kind}', but {error}", "mend the dimensions")
 
 
 def _example(dimension: str) -> str:
@@ -294,18 +302,14 @@ def _bridging(top: Table) -> dict[str, dict[str, Any]]:
     if table is None:
         return {}
     found: dict[str, dict[str, Any]] = {}
-    for coefficient in BRIDGED:
+    for coefficient, (texts, numbers) in BRIDGED.items():
         entry = table.table(coefficient)
         if entry is None:
             continue
-        values: dict[str, Any] = {key: entry.string(key) for key in ("function", "variable")}
-        for key in BRIDGE_NUMBERS:
-            values[key] = entry.number(key, *_bounds(key), open_low=key != "offset")
+        values: dict[str, Any] = {key: entry.string(key) for key in texts}
+        for key in numbers:
+            values[key] = entry.number(key, 0.0, math.inf, open_low=key in POSITIVE)
         entry.finish()
         found[coefficient] = {key: value for key, value in values.items() if value is not None}
     table.finish()
     return found
-
-
-def _bounds(key: str) -> tuple[float, float]:
-    return (-10.0, 10.0) if key == "offset" else (0.0, math.inf)
