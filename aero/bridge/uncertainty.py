@@ -1,0 +1,221 @@
+"""The 95 % band of drag and heating, from named contributions that are kept apart.
+
+Every contribution is a signed relative 1-sigma, d ln(value)/d(cause) times the cause's 1-sigma, so that
+whoever adds up an entry or a set of samples can correlate them as they are: a density bias is common to all
+points, a scatter is not.
+"""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+from typing import TYPE_CHECKING
+
+import numpy as np
+
+from aero.arrays import ArrayLike, Floats, floats
+from aero.bridge.defaults import Bridge, HeatBridge
+from aero.bridge.functions import Fraction
+from aero.heat.convective import CONVECTIVE, convective_sigma
+from aero.heat.radiative import radiative_sigma
+
+if TYPE_CHECKING:
+    from aero.force import Coefficients
+    from aero.heat.stagnation import Stagnation
+
+COVERAGE = 1.96  # standard deviations on either side of 95 % of a normal distribution
+WALL_SIGMA = 0.10  # relative 1-sigma of a wall temperature, given or in balance (judgement)
+GAS_SURFACE_SIGMA = 0.02  # relative 1-sigma of free-molecular drag from the form of reflection: closed forms
+# with mean energy differ by 1.8-2.5 % from Cercignani-Lampis-Lord [Walker2014]
+APPROACH = 0.20  # how slowly drag nears its free-molecular limit, see `drag_band`
+NON_CATALYTIC = 0.5  # a wall that does not recombine atoms may see half the continuum heating (judgement)
+_RADIATIVE_DENSITY_EXPONENT = 1.22  # [TauberSutton1991]
+
+
+@dataclass(frozen=True, eq=False)
+class Band:
+    """Bounds that hold 95 % of what the value may be, and what they are made of.
+
+    Attributes
+    ----------
+    low, high : (...,) array
+        Bounds, in the unit of the value; of the value's own sign.
+    contributions : dict of str to (...,) array
+        Signed relative 1-sigma of each independent cause.
+    below, above : dict of str to (...,) array
+        One-sided parts: how far, in ln(value), each may lie below or above (95 %).
+    """
+
+    low: Floats
+    high: Floats
+    contributions: dict[str, Floats]
+    below: dict[str, Floats]
+    above: dict[str, Floats]
+
+
+def accommodation_sigma(altitude: ArrayLike) -> Floats:
+    """Return the 1-sigma of the energy accommodation by altitude [m] (judgement).
+
+    Examples
+    --------
+    >>> accommodation_sigma([80e3, 200e3, 400e3, 500e3, 800e3]).tolist()
+    [0.05, 0.03, 0.05, 0.1, 0.2]
+    """
+    steps = np.array([150e3, 300e3, 450e3, 600e3])
+    values = np.array([0.05, 0.03, 0.05, 0.10, 0.20])
+    height = floats(altitude)
+    if height.size and height.max() < steps[0]:
+        return np.full(height.shape, values[0])
+    return values[np.searchsorted(steps, height, side="right")]
+
+
+def drag_band(
+    drag: ArrayLike,
+    continuum: ArrayLike,
+    free_molecular: Coefficients,
+    bridge: Bridge,
+    number: ArrayLike,
+    *,
+    density_sigma: tuple[ArrayLike, ArrayLike],
+    cross_section: ArrayLike,
+    accommodation: ArrayLike,
+    wall_temperature: ArrayLike,
+    fraction: Fraction | None = None,
+) -> Band:
+    """Return the 95 % band of a bridged drag coefficient.
+
+    Parameters
+    ----------
+    drag, continuum : (...,) array_like
+        The bridged coefficient and its continuum limit.
+    free_molecular : Coefficients
+        The free-molecular limit with its derivatives.
+    bridge : Bridge
+    number : (...,) array_like
+        The similarity number the bridge was evaluated at.
+    density_sigma : (bias, scatter)
+        Relative 1-sigma of the density.
+    cross_section, accommodation : (...,) array_like
+        1-sigma of the free path from cross-sections (relative, `aero.gas.free_path_uncertainty`) and of the
+        energy accommodation (absolute).
+    wall_temperature : (...,) array_like [K]
+    fraction : Fraction, optional
+        What `bridge(number)` gave, to save doing it again.
+
+    Returns
+    -------
+    Band
+        NaN where the drag is; never through zero.
+
+    Notes
+    -----
+    ln C is taken as normal, which for a few percent is the same as C normal, keeps the bounds positive, and
+    for a bridge far from its centre follows the exact shift more closely. Density and cross-sections enter
+    through the similarity number only. One-sided below: the bridge nears F = 1 like exp(-log^2), whereas
+    first collisions act as a slow power of the Knudsen number; 0.2 F/sqrt(1 + 0.1 x/x_m) is how far the
+    sphere correlation of [Loth2021] stays behind. One-sided above: `Bridge.continuum_above`. One-sided parts and the
+    symmetric one add in quadrature on their side.
+    """
+    c, cc, cf = floats(drag), floats(continuum), free_molecular.drag
+    share = bridge(number) if fraction is None else fraction
+    inverse = 1.0 / np.where(c == 0.0, np.nan, c)
+    tilt = (cf - cc) * inverse
+    thin = share.value * inverse
+    level = (1.0 - share.value) * cc * inverse
+    through_number = share.slope * -tilt
+    bias, scatter = density_sigma
+    contributions = {
+        "density bias": through_number * floats(bias),
+        "density scatter": through_number * floats(scatter),
+        "cross-sections": through_number * floats(cross_section),
+        "accommodation": thin * free_molecular.drag_by_accommodation * floats(accommodation),
+        "gas-surface form": thin * cf * GAS_SURFACE_SIGMA,
+        "bridge centre": tilt * share.by_centre * bridge.centre_sigma,
+        "bridge width": tilt * share.by_width * bridge.width_sigma,
+        "continuum level": level * bridge.continuum_sigma,
+        "wall": thin * free_molecular.drag_by_wall_temperature * (WALL_SIGMA * floats(wall_temperature)),
+    }
+    behind = APPROACH * share.value / np.sqrt(1.0 + 0.1 * bridge.over_centre(number))
+    above = {"continuum above Newtonian": level * bridge.continuum_above} if bridge.continuum_above else {}
+    return _band(c, contributions, {"approach to free-molecular": behind}, above)
+
+
+def heat_band(
+    heating: Stagnation,
+    bridge: HeatBridge,
+    speed: ArrayLike,
+    *,
+    density_sigma: tuple[ArrayLike, ArrayLike],
+    accommodation: ArrayLike,
+    accommodation_sigma: ArrayLike,
+) -> Band:
+    """Return the 95 % band of the stagnation heat flux.
+
+    Parameters
+    ----------
+    heating : Stagnation
+    bridge : HeatBridge
+    speed : (...,) array_like [m/s]
+    density_sigma : (bias, scatter)
+        Relative 1-sigma of the density.
+    accommodation, accommodation_sigma : (...,) array_like
+        Energy accommodation and its 1-sigma.
+
+    Returns
+    -------
+    Band
+        0 to 0 at speed 0; NaN where the flux is.
+
+    Notes
+    -----
+    With w the continuum's weight, d ln q = w d ln q_c + (1 - w) d ln q_fm: density enters as w/2 + (1 - w)
+    for a continuum flux that grows as its square root, and as rho^1.22 in the radiative part. The bridge's
+    own 1-sigma is 4 w (1 - w) of its value midway. Cross-sections do not enter: neither limit nor their
+    blend knows the free path. One-sided below: half of the continuum part for a non-catalytic wall, growing
+    from nothing at 3 km/s, where the shock layer begins to dissociate, to its whole at 5 km/s (judgement).
+    Where the flux itself passes through zero with the wall at the recovery temperature, the wall's relative share
+    is held at 1.
+    """
+    total = heating.total
+    v = floats(speed)
+    resting = total == 0.0
+    inverse = 1.0 / np.where(resting, np.nan, total)
+    convective = heating.bridged * inverse
+    radiative = heating.radiative * inverse
+    thick = heating.continuum_weight * convective
+    thin = convective - thick
+    exponent = CONVECTIVE[heating.convective].density_exponent
+    by_density = exponent * thick + thin
+    if heating.radiative.any():
+        by_density = by_density + _RADIATIVE_DENSITY_EXPONENT * radiative
+    bias, scatter = density_sigma
+    by_wall = heating.by_wall_temperature * (WALL_SIGMA * inverse) * heating.wall_temperature
+    contributions = {
+        "density bias": by_density * floats(bias),
+        "density scatter": by_density * floats(scatter),
+        "accommodation": thin * (floats(accommodation_sigma) / floats(accommodation)),
+        "bridge": thin * heating.continuum_weight * (4.0 * bridge.sigma),
+        "continuum level": thick * convective_sigma(v),
+        "radiative level": radiative * radiative_sigma(heating.radiative_validity),
+        "wall": np.clip(by_wall, -1.0, 1.0),
+    }
+    dissociated = np.clip((v - 3000.0) / 2000.0, 0.0, 1.0)
+    below = {"non-catalytic wall": -np.log1p(thick * dissociated * (NON_CATALYTIC - 1.0))}
+    band = _band(total, contributions, below, {})
+    low = np.where(resting, 0.0, np.minimum(band.low, band.high))
+    high = np.where(resting, 0.0, np.maximum(band.low, band.high))
+    return Band(low, high, contributions, below, {})
+
+
+def _band(
+    value: Floats, contributions: dict[str, Floats], below: dict[str, Floats], above: dict[str, Floats]
+) -> Band:
+    variance = np.zeros(value.shape)
+    part_squared = np.empty_like(variance)
+    for part in contributions.values():  # in place: this is the widest loop of the whole chain
+        variance += np.multiply(part, part, out=part_squared)
+    variance *= COVERAGE**2
+    down = variance + sum(part * part for part in below.values())
+    up = variance + sum(part * part for part in above.values())
+    upper = np.exp(np.sqrt(up))
+    lower = np.exp(-np.sqrt(down))
+    return Band(value * lower, value * upper, contributions, below, above)
