@@ -1,0 +1,117 @@
+"""What a reader should know about the input and the models, in plain sentences."""
+
+from __future__ import annotations
+
+from collections.abc import Mapping
+
+import numpy as np
+
+from aero.air.state import Atmosphere
+from aero.body import Vehicle
+from aero.survey.settings import Settings
+from aero.trajectory import Trajectory
+
+FAST = 9e3  # m/s, where shock-layer radiation begins to matter
+SLOW_MACH = 2.0  # below it the Newtonian limit is an extrapolation
+ACTIVE_FROM = 120e3  # m, winds and activity matter above it
+BLUNT = np.radians(45.0)
+
+
+def survey_notes(
+    trajectory: Trajectory,
+    vehicle: Vehicle,
+    atmosphere: Atmosphere,
+    settings: Settings,
+    columns: Mapping[str, np.ndarray],
+) -> tuple[str, ...]:
+    """Return the notes of a survey.
+
+    Parameters
+    ----------
+    trajectory, vehicle, atmosphere, settings
+        What was surveyed and how.
+    columns : mapping of name to (n,) array
+        The computed columns of the points table.
+    """
+    notes = list(trajectory.notes)
+    if trajectory.skipped:
+        count = len(trajectory.skipped)
+        notes.append(f"{count} bad row{'s were' if count > 1 else ' was'} skipped; skipped.csv lists each with its reason.")
+    if trajectory.time is None:
+        notes.append("No time column: points were surveyed one by one, without crossings, segments or loads.")
+    notes += _common(vehicle, atmosphere, settings, trajectory.altitude, trajectory.speed, columns)
+    return tuple(notes)
+
+
+def point_notes(
+    vehicle: Vehicle | None,
+    atmosphere: Atmosphere,
+    settings: Settings,
+    row: Mapping[str, float],
+    altitude: float,
+    speed: float,
+) -> tuple[str, ...]:
+    """Return the notes of a single condition."""
+    columns = {name: np.array([value]) for name, value in row.items()}
+    notes = _common(vehicle, atmosphere, settings, np.array([altitude]), np.array([speed]), columns)
+    if vehicle is None:
+        notes.append("Emitted Knudsen numbers are for a 300 K wall with full accommodation, unless one is given.")
+    if speed == 0.0:
+        notes.append("At rest there are no coefficients, no shock and no heat flux.")
+    return tuple(notes)
+
+
+def _common(
+    vehicle: Vehicle | None,
+    atmosphere: Atmosphere,
+    settings: Settings,
+    altitude: np.ndarray,
+    speed: np.ndarray,
+    columns: Mapping[str, np.ndarray],
+) -> list[str]:
+    notes = []
+    if settings.free_path != "hard-sphere":
+        notes.append(
+            f"Mean free paths, Knudsen numbers and tags use the {settings.free_path} definition; bridges are "
+            "evaluated in the hard-sphere definition they were fitted in, so drag and heating do not move."
+        )
+    if atmosphere.name == "standard-1976":
+        notes.append(
+            "The 1976 standard is a mean mid-latitude atmosphere, not the air of a day; the band holds how far it "
+            "usually lies from it."
+        )
+    elif altitude.size and float(np.max(altitude)) > ACTIVE_FROM:
+        notes.append("Winds of 100-200 m/s in the thermosphere are not modelled; they change drag by 2-5 % (judgement).")
+    if vehicle is not None:
+        notes += _vehicle(vehicle, speed, altitude, columns)
+    return notes
+
+
+def _vehicle(
+    vehicle: Vehicle, speed: np.ndarray, altitude: np.ndarray, columns: Mapping[str, np.ndarray]
+) -> list[str]:
+    notes = []
+    mach = columns["mach"]
+    moving = mach > 0.0
+    if vehicle.continuum is None and np.any(moving & (mach < SLOW_MACH)):
+        share = np.mean(moving & (mach < SLOW_MACH))
+        where = "here" if mach.size == 1 else f"at {100 * share:.0f} % of the points"
+        notes.append(
+            f"Below Mach {SLOW_MACH:g} ({where}) the Newtonian continuum limit is an extrapolation; give a [continuum] "
+            "table for that part."
+        )
+    if vehicle.nose_radius is None:
+        notes.append("No nose radius: stagnation heating is not computed; give [heating] nose_radius.")
+        return notes
+    half_angle = getattr(vehicle.shape, "half_angle", None)
+    if half_angle is not None and half_angle >= BLUNT and not vehicle.states_nose_radius:
+        notes.append(
+            "On a blunt capsule the sonic line may sit at the shoulder; its stagnation heating then follows an "
+            "effective radius larger than the nose's (Zoby & Sullivan 1966). Give it as [heating] nose_radius."
+        )
+    if np.any(speed >= FAST):
+        notes.append(
+            "Shock-layer radiation (Tauber & Sutton 1991) is an equilibrium correlation for 10-16 km/s and nose radii of "
+            "0.3-3 m; between 9 and 10 km/s and above 70 km it is uncertain by a factor of 2 or more (judgement)."
+        )
+    return notes

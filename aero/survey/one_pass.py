@@ -1,0 +1,338 @@
+"""One pass over a trajectory: points in blocks, then crossings, segments and loads."""
+
+from __future__ import annotations
+
+from collections.abc import Callable, Sequence
+from dataclasses import dataclass, field
+from typing import TYPE_CHECKING
+
+import numpy as np
+import pandas as pd
+
+from aero.air import Msis, StandardAtmosphere1976
+from aero.air.state import Air, Atmosphere
+from aero.arrays import Floats
+from aero.body import Vehicle
+from aero.gas import free_path_uncertainty
+from aero.regime import REGIMES, Crossings, Cuts, Track, cut_segments, find_crossings
+from aero.regime.track import clock
+from aero.survey.chain import Inputs, conditions
+from aero.survey.columns import CROSSING_COLUMNS, SEGMENT_COLUMNS, free_name, point_columns
+from aero.survey.loads import Load, share
+from aero.survey.methods import segment_methods
+from aero.survey.notes import survey_notes
+from aero.survey.settings import Settings
+from aero.trajectory import Trajectory
+
+if TYPE_CHECKING:
+    from pathlib import Path
+
+BLOCK = 16_384  # rows a pass: the working arrays stay in the second-level cache
+ALTITUDE_RANGE = (-5e3, 1000e3)  # m, what a trajectory may hold
+Progress = Callable[[int], None]
+
+
+@dataclass(frozen=True, eq=False)
+class Survey:
+    """What a survey found.
+
+    Attributes
+    ----------
+    trajectory, vehicle, atmosphere, settings
+        What it was made from.
+    points, segments, crossings : DataFrame
+        Columns as docs/formats.md lists; units are the suffixes of the names.
+    notes : tuple of str
+        What a reader should know about the input and the models.
+    """
+
+    trajectory: Trajectory
+    vehicle: Vehicle
+    atmosphere: Atmosphere
+    settings: Settings
+    points: pd.DataFrame
+    segments: pd.DataFrame
+    crossings: pd.DataFrame
+    notes: tuple[str, ...] = field(default=())
+
+    @property
+    def lengths(self) -> dict[str, float]:
+        """Every surveyed length [m], `reference` first."""
+        return named_lengths(self.vehicle)
+
+    @property
+    def summary(self) -> str:
+        """A sentence anyone can repeat."""
+        from aero.survey.summary import summary_sentence
+
+        return summary_sentence(self.vehicle, self.lengths, self.points, self.segments, self.crossings)
+
+    def write(
+        self,
+        out: str | Path,
+        *,
+        replace: bool = False,
+        tables: Sequence[str] = ("csv", "parquet"),
+        figures: str = "all",
+        progress: Callable[[str, float], None] | None = None,
+    ) -> list[str]:
+        """Write tables, figures and the report into a folder, whole or not at all.
+
+        Returns
+        -------
+        list of str
+            The files written, relative to the folder.
+        """
+        from aero.survey.write import write_survey
+
+        return write_survey(self, out, replace=replace, tables=tables, figures=figures, progress=progress)
+
+    def __str__(self) -> str:
+        return f"Survey of {self.trajectory.name} with {self.vehicle.name}: {len(self.points)} points\n{self.summary}"
+
+
+def named_lengths(vehicle: Vehicle) -> dict[str, float]:
+    """Return every length of a vehicle [m], `reference` first."""
+    return {"reference": vehicle.reference_length, **vehicle.lengths}
+
+
+def default_atmosphere(trajectory: Trajectory) -> Atmosphere:
+    """Return NRLMSISE-00 at moderate activity where date and place are known, else the 1976 standard."""
+    placed = trajectory.latitude is not None and trajectory.longitude is not None
+    return Msis("nrlmsise-00", activity="moderate") if placed and trajectory.utc is not None else (
+        StandardAtmosphere1976()
+    )
+
+
+def survey(
+    trajectory: Trajectory,
+    vehicle: Vehicle,
+    *,
+    atmosphere: Atmosphere | None = None,
+    settings: Settings | None = None,
+    progress: Progress | None = None,
+) -> Survey:
+    """Survey a flight: air, Knudsen numbers, regimes, drag and heating at every point, and where they change.
+
+    Parameters
+    ----------
+    trajectory : Trajectory
+    vehicle : Vehicle
+    atmosphere : Atmosphere, optional
+        Default: NRLMSISE-00 at moderate activity where date and place are known, else the 1976 standard.
+    settings : Settings, optional
+    progress : callable, optional
+        Called with the number of points done since the last call.
+
+    Returns
+    -------
+    Survey
+
+    Raises
+    ------
+    InputError
+        If the atmosphere needs date and place and the trajectory has none, or the vehicle lacks what the
+        settings ask for.
+    """
+    air_model = atmosphere or default_atmosphere(trajectory)
+    chosen = settings or Settings()
+    lengths = named_lengths(vehicle)
+    columns = _points(trajectory, vehicle, air_model, chosen, lengths, progress)
+    track = Track.along(trajectory) if trajectory.time is not None else None
+    if track is None:
+        crossings, segments = _no_crossings(), _no_segments()
+    else:
+        found = find_crossings(
+            track,
+            air_model,
+            chosen.free_path,
+            columns["mean_free_path_m"],
+            list(lengths.values()),
+            chosen.bounds,
+            lambda air: path_uncertainty(air_model, air),
+            _reach(trajectory),
+        )
+        crossings = _crossing_table(found, list(lengths), chosen.bounds)
+        segments = _segment_table(trajectory, vehicle, air_model, chosen, lengths, columns, track, found)
+    points = _frame(columns, trajectory, lengths)
+    notes = survey_notes(trajectory, vehicle, air_model, chosen, columns)
+    return Survey(trajectory, vehicle, air_model, chosen, points, segments, crossings, notes)
+
+
+def path_uncertainty(atmosphere: Atmosphere, air: Air) -> Floats:
+    """Return the 1-sigma of the logarithm of the mean free path: density and cross-sections together."""
+    bias, scatter = atmosphere.uncertainty(air.altitude)
+    cross_section = free_path_uncertainty(air)
+    return np.sqrt(bias * bias + scatter * scatter + cross_section * cross_section)
+
+
+def _reach(trajectory: Trajectory) -> tuple[float, float]:
+    # The vertical search of the uncertainty may look past the flight, within what every model answers.
+    return max(ALTITUDE_RANGE[0], min(0.0, float(trajectory.altitude.min()))), ALTITUDE_RANGE[1]
+
+
+def block_inputs(trajectory: Trajectory, rows: slice) -> Inputs:
+    """Return the part of a trajectory that one pass of the chain works on."""
+
+    def part(values: Floats | None) -> Floats | None:
+        return None if values is None else values[rows]
+
+    utc = trajectory.utc
+    return Inputs(
+        altitude=trajectory.altitude[rows],
+        speed=trajectory.speed[rows],
+        latitude=part(trajectory.latitude),
+        longitude=part(trajectory.longitude),
+        utc=None if utc is None else utc[rows],
+        angle_of_attack=part(trajectory.angle_of_attack),
+        wall_temperature=part(trajectory.wall_temperature),
+    )
+
+
+def _points(
+    trajectory: Trajectory,
+    vehicle: Vehicle,
+    atmosphere: Atmosphere,
+    settings: Settings,
+    lengths: dict[str, float],
+    progress: Progress | None,
+) -> dict[str, np.ndarray]:
+    """Return all computed columns, filled block by block into arrays made once."""
+    count = trajectory.altitude.size
+    columns: dict[str, np.ndarray] = {}
+    for start in range(0, count, BLOCK):
+        rows = slice(start, min(start + BLOCK, count))
+        part = conditions(block_inputs(trajectory, rows), atmosphere, vehicle, lengths, settings)
+        for name, values in part.items():
+            if name not in columns:
+                columns[name] = np.empty(count, dtype=values.dtype)
+            columns[name][rows] = values
+        if progress:
+            progress(rows.stop - rows.start)
+    if trajectory.time is not None:
+        columns["heat_load_J_m2"] = Load.of(trajectory.time, columns["heat_flux_W_m2"]).samples
+    return columns
+
+
+def _frame(columns: dict[str, np.ndarray], trajectory: Trajectory, lengths: dict[str, float]) -> pd.DataFrame:
+    """Return the points table; columns nobody knows are one NaN seen many times, not memory."""
+    count = trajectory.altitude.size
+    known: dict[str, np.ndarray] = {
+        "altitude_m": trajectory.altitude,
+        "air_speed_m_s": trajectory.speed,
+        **columns,
+    }
+    if trajectory.time is not None:
+        known["time_s"] = trajectory.time
+    for name in ("latitude", "longitude", "flight_path_angle"):
+        values = getattr(trajectory, name)
+        if values is not None:
+            known[f"{name}_deg"] = np.degrees(values)
+    data: dict[str, object] = {}
+    for column in point_columns(list(lengths)):
+        if column.name == "utc":
+            utc = trajectory.utc
+            nat = np.broadcast_to(np.datetime64("NaT", "us"), count)
+            data["utc"] = nat if utc is None else utc.astype("datetime64[us]")
+        elif column.name.startswith("regime."):
+            data[column.name] = pd.Categorical.from_codes(known[column.name], categories=list(REGIMES))
+        else:
+            data[column.name] = known.get(column.name, np.broadcast_to(np.nan, count))
+    for name, values in trajectory.extra.items():
+        data[free_name(name, data)] = values
+    return pd.DataFrame(data, copy=False)
+
+
+def _crossing_table(found: Crossings, names: list[str], bounds: Sequence[float]) -> pd.DataFrame:
+    return pd.DataFrame(
+        {
+            "length": [names[i] for i in found.length],
+            "bound": np.asarray(bounds, dtype=np.float64)[found.bound.astype(np.int64)],
+            "direction": np.where(found.rarefying, "rarefying", "densifying"),
+            "time_s": found.time,
+            "altitude_m": found.altitude,
+            "air_speed_m_s": found.speed,
+            "altitude_low_m": found.altitude_low,
+            "altitude_high_m": found.altitude_high,
+        },
+        columns=list(CROSSING_COLUMNS),
+    )
+
+
+def _segment_table(
+    trajectory: Trajectory,
+    vehicle: Vehicle,
+    atmosphere: Atmosphere,
+    settings: Settings,
+    lengths: dict[str, float],
+    columns: dict[str, np.ndarray],
+    track: Track,
+    found: Crossings,
+) -> pd.DataFrame:
+    time = trajectory.time
+    assert time is not None  # a track has times
+    values = list(lengths.values())
+    cuts = cut_segments(time, columns["mean_free_path_m"], values, settings.bounds, found)
+    heat = Load.of(time, columns["heat_flux_W_m2"])
+    slowing = Load.of(time, columns["drag_deceleration_m_s2"])
+    heat_parts = heat.between(cuts.start, cuts.end)
+    slow_parts = slowing.between(cuts.start, cuts.end)
+
+    def between_samples(when: Floats) -> dict[str, np.ndarray]:
+        return conditions(track_inputs(track, trajectory, when), atmosphere, vehicle, lengths, settings)
+
+    method, reason = segment_methods(cuts, list(lengths), columns, time, settings.bounds, between_samples)
+    names = list(lengths)
+    return pd.DataFrame(
+        {
+            "length": [names[i] for i in cuts.length],
+            "regime": [REGIMES[i] for i in cuts.regime],
+            "start_s": cuts.start,
+            "end_s": cuts.end,
+            "start_altitude_m": track.altitude(cuts.start),
+            "end_altitude_m": track.altitude(cuts.end),
+            "duration_s": cuts.end - cuts.start,
+            "knudsen_min": cuts.knudsen_min,
+            "knudsen_max": cuts.knudsen_max,
+            "heat_load_J_m2": heat_parts,
+            "heat_load_share": share(heat_parts, heat.total),
+            "speed_loss_m_s": slow_parts,
+            "speed_loss_share": share(slow_parts, slowing.total),
+            "method": method,
+            "method_reason": reason,
+        },
+        columns=list(SEGMENT_COLUMNS),
+    )
+
+
+def track_inputs(track: Track, trajectory: Trajectory, when: Floats) -> Inputs:
+    """Return the inputs of the chain at times between the samples."""
+    time = trajectory.time
+    assert time is not None  # a track has times
+
+    def between(values: Floats | None) -> Floats | None:
+        return None if values is None else np.interp(when, time, values)
+
+    placed = track.latitude is not None and track.longitude is not None
+    return Inputs(
+        altitude=track.altitude(when),
+        speed=track.speed(when),
+        latitude=track.latitude(when) if placed and track.latitude else None,
+        longitude=track.longitude(when) if placed and track.longitude else None,
+        utc=None if trajectory.epoch is None else clock(trajectory.epoch, when),
+        angle_of_attack=between(trajectory.angle_of_attack),
+        wall_temperature=between(trajectory.wall_temperature),
+    )
+
+
+def _no_crossings() -> pd.DataFrame:
+    text = ("length", "direction")
+    return pd.DataFrame({n: pd.Series(dtype="str" if n in text else "float64") for n in CROSSING_COLUMNS})
+
+
+def _no_segments() -> pd.DataFrame:
+    text = ("length", "regime", "method", "method_reason")
+    return pd.DataFrame({n: pd.Series(dtype="str" if n in text else "float64") for n in SEGMENT_COLUMNS})
+
+
+__all__ = ["BLOCK", "Cuts", "Survey", "named_lengths", "survey"]

@@ -1,0 +1,48 @@
+"""Date and place given beside a trajectory that has none of its own."""
+
+from __future__ import annotations
+
+import dataclasses
+
+import numpy as np
+
+from aero.errors import InputError
+from aero.trajectory import Trajectory
+
+
+def placed(
+    trajectory: Trajectory,
+    *,
+    date: np.datetime64 | None = None,
+    latitude: float | None = None,
+    longitude: float | None = None,
+) -> Trajectory:
+    """Return the trajectory with a date of time 0 and one place for all its points.
+
+    Parameters
+    ----------
+    trajectory : Trajectory
+    date : datetime64, optional
+        UTC of time 0.
+    latitude, longitude : float, optional [rad]
+
+    Raises
+    ------
+    InputError
+        If the file states them itself, or has no time that a date could belong to.
+    """
+    changes: dict[str, object] = {}
+    if date is not None:
+        if trajectory.epoch is not None:
+            raise InputError(
+                f"the file states its own epoch, {trajectory.epoch}", source="--date", remedy="drop the option"
+            )
+        changes["epoch"] = date
+    count = trajectory.altitude.size
+    for name, value in (("latitude", latitude), ("longitude", longitude)):
+        if value is None:
+            continue
+        if getattr(trajectory, name) is not None:
+            raise InputError(f"the file states its own {name}", source=f"--{name}", remedy="drop the option")
+        changes[name] = np.full(count, value)
+    return dataclasses.replace(trajectory, **changes) if changes else trajectory  # type: ignore[arg-type]
