@@ -8,13 +8,15 @@ attack turns the body in the x-z plane: the flow arrives from (cos a, 0, sin a),
 from __future__ import annotations
 
 from dataclasses import dataclass
+from functools import lru_cache
 
 import numpy as np
 
-from aero.arrays import Floats
+from aero.arrays import Floats, floats
 
 AZIMUTHS = 360  # around half a circle; 1e-6 of a cone's free-molecular drag up to a speed ratio of 100
-COLATITUDES = 96  # Gauss points along a part of a sphere
+COLATITUDES = 40  # Gauss points along each part of a sphere
+TERMINATOR = 0.1  # rad; the flux bends within about 1/S of grazing incidence, so parts end this far from it
 
 
 @dataclass(frozen=True, eq=False)
@@ -128,31 +130,48 @@ def sphere_cap(radius: float, edge: float, angle_of_attack: float) -> Facets:
 
 def sphere_whole(radius: float) -> Facets:
     """Return a whole sphere, split where shadow and base pressure set in."""
-    return join(*(_band(low, low + np.pi / 6.0, radius, 24) for low in np.arange(6) * np.pi / 6.0))
+    return join(*(_band(low, low + np.pi / 6.0, radius) for low in np.arange(6) * np.pi / 6.0))
 
 
 def cylinder_mantle(radius: float, length: float) -> Facets:
     """Return the mantle of a cylinder across the flow."""
-    nodes, weights = np.polynomial.legendre.leggauss(24)
-    width = np.pi / 6.0
-    angle = (np.arange(6)[:, None] * width + (nodes + 1.0) * width / 2.0).ravel()
-    areas = np.tile(weights * width / 2.0, 6) * 2.0 * radius * length
+    angle, weight = _rule(np.arange(7) * np.pi / 6.0)
+    areas = weight * 2.0 * radius * length
     return Facets(np.cos(angle), areas, np.zeros_like(areas))
 
 
-def _band(low: float, high: float, radius: float, count: int = COLATITUDES) -> Facets:
+@lru_cache(maxsize=8)
+def _gauss(count: int) -> tuple[Floats, Floats]:
+    """Return Gauss-Legendre nodes and weights on [-1, 1]."""
     nodes, weights = np.polynomial.legendre.leggauss(count)
-    angle = low + (nodes + 1.0) * (high - low) / 2.0
-    areas = weights * (high - low) / 2.0 * 2.0 * np.pi * radius**2 * np.sin(angle)
+    return floats(nodes), floats(weights)
+
+
+def _parts(low: float, high: float) -> Floats:
+    """Return the ends of the parts of a range of colatitudes [rad]."""
+    inside = [edge for edge in np.pi / 2.0 + TERMINATOR * np.array([-1.0, 0.0, 1.0]) if low < edge < high]
+    return np.array([low, *inside, high])
+
+
+def _rule(ends: Floats) -> tuple[Floats, Floats]:
+    """Return nodes and weights of Gauss's rule on each part."""
+    nodes, weights = _gauss(COLATITUDES)
+    half = np.diff(ends)[:, None] / 2.0
+    return (ends[:-1, None] + half * (nodes + 1.0)).ravel(), (half * weights).ravel()
+
+
+def _band(low: float, high: float, radius: float) -> Facets:
+    angle, weight = _rule(_parts(low, high))
+    areas = weight * 2.0 * np.pi * radius**2 * np.sin(angle)
     return Facets(np.cos(angle), areas, np.zeros_like(areas))
 
 
 def _lens(low: float, high: float, tilt: float, edge: float, radius: float, side: float) -> Facets:
-    nodes, weights = np.polynomial.legendre.leggauss(COLATITUDES)
-    sweep = (nodes + 1.0) * np.pi / 2.0  # angle = middle - half cos(sweep) lifts the square roots at the ends
-    half = (high - low) / 2.0
-    angle = (low + high) / 2.0 - half * np.cos(sweep)
-    step = weights * np.pi / 2.0 * half * np.sin(sweep) * np.sin(angle) * radius**2
+    middle, half = (low + high) / 2.0, (high - low) / 2.0
+    # colatitude = middle - half cos(sweep) lifts the square roots at both ends
+    sweep, weight = _rule(np.arccos(np.clip((middle - _parts(low, high)) / half, -1.0, 1.0)))
+    angle = middle - half * np.cos(sweep)
+    step = weight * half * np.sin(sweep) * np.sin(angle) * radius**2
     inside = (np.cos(edge) - np.cos(tilt) * np.cos(angle)) / (np.sin(tilt) * np.sin(angle))
     azimuth = np.arccos(np.clip(inside, -1.0, 1.0))
     return Facets(np.cos(angle), 2.0 * azimuth * step, side * 2.0 * np.sin(azimuth) * np.sin(angle) * step)

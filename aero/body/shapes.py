@@ -83,8 +83,8 @@ class Shape(ABC):
     def facets(self, angle_of_attack: float) -> Facets:
         """Return a quadrature over the surface as the flow at an angle of attack [rad] sees it."""
 
-    def faces(self) -> tuple[Floats, Floats]:
-        """Return normals (n, 3) and areas (n,) of a flat-faced body."""
+    def slabs(self) -> tuple[Floats, Floats]:
+        """Return a flat-faced body as pairs of opposite equal faces: normals (n, 3) and areas (n,) of one."""
         raise ValueError(f"a {self.kind} has no flat faces")
 
 
@@ -212,9 +212,9 @@ class FlatPlate(Shape):
         """Area of one face [m2] (edge-on there is no other)."""
         return self.length * self.width
 
-    def faces(self) -> tuple[Floats, Floats]:
-        """Return the lower and the upper face."""
-        return np.array([[0.0, 0.0, 1.0], [0.0, 0.0, -1.0]]), np.full(2, self.frontal_area)
+    def slabs(self) -> tuple[Floats, Floats]:
+        """Return the lower face, which stands for both."""
+        return np.array([[0.0, 0.0, 1.0]]), np.array([self.frontal_area])
 
     def panels(self, count: int) -> Panels:
         """See `Shape`."""
@@ -258,12 +258,9 @@ class Box(Shape):
         """Width times height [m2]."""
         return self.width * self.height
 
-    def faces(self) -> tuple[Floats, Floats]:
-        """Return the six faces: front, back, right, left, lower, upper."""
-        unit = np.eye(3)
-        normals = np.stack([unit[0], -unit[0], unit[1], -unit[1], unit[2], -unit[2]])
-        front, side, lower = self.frontal_area, self.length * self.height, self.length * self.width
-        return normals, np.array([front, front, side, side, lower, lower])
+    def slabs(self) -> tuple[Floats, Floats]:
+        """Return the front, right and lower faces, each of which stands for two."""
+        return np.eye(3), np.array([self.frontal_area, self.length * self.height, self.length * self.width])
 
     def panels(self, count: int) -> Panels:
         """See `Shape`."""
@@ -406,9 +403,10 @@ class SphereCone(Shape):
 
 
 def _faces_seen(shape: Shape, angle_of_attack: float) -> Facets:
-    normals, areas = shape.faces()
-    cosines, lifts = see.project(normals, np.float64(angle_of_attack))
-    return Facets(cosines, areas, areas * lifts)
+    normals, areas = shape.slabs()
+    both, twice = np.concatenate([normals, -normals]), np.concatenate([areas, areas])
+    cosines, lifts = see.project(both, np.float64(angle_of_attack))
+    return Facets(cosines, twice, twice * lifts)
 
 
 SHAPES: dict[str, type[Shape]] = {

@@ -132,4 +132,4 @@ def accommodation_uncertainty(altitude: ArrayLike) -> Floats:
     >>> accommodation_uncertainty([80e3, 220e3, 400e3, 520e3, 800e3])
     array([0.05, 0.03, 0.05, 0.1 , 0.2 ])
     """
-    return np.interp(floats(altitude), _ALTITUDE, _SIGMA)
+    return floats(np.interp(floats(altitude), _ALTITUDE, _SIGMA))
