@@ -6,7 +6,6 @@ from aero.bridge.defaults import DEFAULTS, SIMILARITY, Bridge, HeatBridge, bridg
 from aero.bridge.functions import BRIDGES, BridgeFunction, Fraction, blend
 from aero.bridge.uncertainty import (
     Band,
-    accommodation_sigma,
     drag_band,
     heat_band,
 )
@@ -20,7 +19,6 @@ __all__ = [
     "BridgeFunction",
     "Fraction",
     "HeatBridge",
-    "accommodation_sigma",
     "blend",
     "bridge_for",
     "drag_band",

@@ -28,7 +28,7 @@ GAS_SURFACE_SIGMA = 0.02  # relative 1-sigma of free-molecular drag from the for
 # with mean energy differ by 1.8-2.5 % from Cercignani-Lampis-Lord [Walker2014]
 APPROACH = 0.20  # how slowly drag nears its free-molecular limit, see `drag_band`
 NON_CATALYTIC = 0.5  # a wall that does not recombine atoms may see half the continuum heating (judgement)
-_RADIATIVE_DENSITY_EXPONENT = 1.22  # [TauberSutton1991]
+_RADIATIVE_DENSITY_EXPONENT = 1.22  # [TauberSutton1991]; that the radius's exponent knows density is left out
 
 
 @dataclass(frozen=True, eq=False)
@@ -50,22 +50,6 @@ class Band:
     contributions: dict[str, Floats]
     below: dict[str, Floats]
     above: dict[str, Floats]
-
-
-def accommodation_sigma(altitude: ArrayLike) -> Floats:
-    """Return the 1-sigma of the energy accommodation by altitude [m] (judgement).
-
-    Examples
-    --------
-    >>> accommodation_sigma([80e3, 200e3, 400e3, 500e3, 800e3]).tolist()
-    [0.05, 0.03, 0.05, 0.1, 0.2]
-    """
-    steps = np.array([150e3, 300e3, 450e3, 600e3])
-    values = np.array([0.05, 0.03, 0.05, 0.10, 0.20])
-    height = floats(altitude)
-    if height.size and height.max() < steps[0]:
-        return np.full(height.shape, values[0])
-    return values[np.searchsorted(steps, height, side="right")]
 
 
 def drag_band(
@@ -96,7 +80,7 @@ def drag_band(
         Relative 1-sigma of the density.
     cross_section, accommodation : (...,) array_like
         1-sigma of the free path from cross-sections (relative, `aero.gas.free_path_uncertainty`) and of the
-        energy accommodation (absolute).
+        energy accommodation (absolute, `aero.body.accommodation_uncertainty`).
     wall_temperature : (...,) array_like [K]
     fraction : Fraction, optional
         What `bridge(number)` gave, to save doing it again.
@@ -112,8 +96,8 @@ def drag_band(
     for a bridge far from its centre follows the exact shift more closely. Density and cross-sections enter
     through the similarity number only. One-sided below: the bridge nears F = 1 like exp(-log^2), whereas
     first collisions act as a slow power of the Knudsen number; 0.2 F/sqrt(1 + 0.1 x/x_m) is how far the
-    sphere correlation of [Loth2021] stays behind. One-sided above: `Bridge.continuum_above`. One-sided parts and the
-    symmetric one add in quadrature on their side.
+    sphere correlation of [Loth2021] stays behind. One-sided above: `Bridge.continuum_above`. One-sided parts
+    and the symmetric one add in quadrature on their side.
     """
     c, cc, cf = floats(drag), floats(continuum), free_molecular.drag
     share = bridge(number) if fraction is None else fraction
@@ -172,8 +156,8 @@ def heat_band(
     own 1-sigma is 4 w (1 - w) of its value midway. Cross-sections do not enter: neither limit nor their
     blend knows the free path. One-sided below: half of the continuum part for a non-catalytic wall, growing
     from nothing at 3 km/s, where the shock layer begins to dissociate, to its whole at 5 km/s (judgement).
-    Where the flux itself passes through zero with the wall at the recovery temperature, the wall's relative share
-    is held at 1.
+    Where the flux itself passes through zero with the wall at the recovery temperature, the wall's relative
+    share is held at 1.
     """
     total = heating.total
     v = floats(speed)

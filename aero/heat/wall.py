@@ -33,7 +33,8 @@ def radiative_wall(
     Returns
     -------
     (...,) array [K]
-        Root of eps sigma (T^4 - T_env^4) = q(T) to a relative 1e-6 or better; NaN where the flux is NaN.
+        Root of eps sigma (T^4 - T_env^4) = q(T) to a relative 1e-6 or better; NaN where the flux is NaN or
+        no temperature balances.
 
     Raises
     ------
@@ -72,4 +73,4 @@ def radiative_wall(
         wall = following
         if not (moved > 1e-7 * wall).any():
             break
-    return np.where(moved <= 1e-6 * wall, wall, np.nan)
+    return np.where((moved <= 1e-6 * wall) & (wall > 0.0), wall, np.nan)
