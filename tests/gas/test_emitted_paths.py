@@ -63,7 +63,7 @@ def test_density_of_the_emitted_by_counting_molecules() -> None:
     age, layer = 1.0, 0.02 * c_wall
     outgoing = c_wall * np.sqrt(-np.log(random.random(count)))
     inside = np.mean(outgoing * age * random.random(count) < layer)
-    # slow ones that left before the count began are missing from the layer: x/sqrt(pi) of it, x = layer/(c age)
+    # slow ones that left before the count began are missing: x/sqrt(pi) of the layer, x = layer/(c age)
     counted = arriving * age * inside / layer / (1.0 - 0.02 / math.sqrt(math.pi))
     ours = emitted_number_density(
         np.array(1.0), np.array(s), np.array(c), np.array(c_wall / math.sqrt(math.pi))
