@@ -1,0 +1,115 @@
+"""Names a user chose (vehicles, lengths, files), made fit to be shown anywhere."""
+
+from __future__ import annotations
+
+import unicodedata
+from collections.abc import Iterable, Mapping
+from typing import TYPE_CHECKING, TypeAlias
+
+import numpy as np
+
+from aero.arrays import ArrayLike, Floats, floats
+
+if TYPE_CHECKING:
+    import pandas as pd
+
+Table: TypeAlias = "pd.DataFrame | Mapping[str, ArrayLike]"
+"""What the report is given: a data frame or a dict of equally long columns."""
+
+REFERENCE = "reference"
+
+
+def visible(text: object) -> str:
+    """Return text on one line in which every character is legal in HTML and SVG and can be seen.
+
+    Control characters become their picture (U+2400 and on); direction overrides, lone surrogates and
+    characters that XML forbids become the replacement character. Nothing is dropped in silence.
+
+    Examples
+    --------
+    >>> visible("two\\nlines"), visible("a<b>_$%")
+    ('two␊lines', 'a<b>_$%')
+    """
+    return "".join(_visible_character(c) for c in str(text))
+
+
+def _visible_character(character: str) -> str:
+    code = ord(character)
+    if code < 0x20:
+        return chr(0x2400 + code)
+    if code == 0x7F:
+        return "\u2421"
+    kind = unicodedata.category(character)
+    overrides = 0x202A <= code <= 0x202E or 0x2066 <= code <= 0x2069
+    if kind in {"Cc", "Cs", "Zl", "Zp"} or overrides or (code & 0xFFFE) == 0xFFFE:
+        return "\ufffd"
+    return character
+
+
+def shorten(text: object, limit: int) -> str:
+    """Return `visible` text of at most `limit` characters, cut in the middle where it is longer.
+
+    Examples
+    --------
+    >>> shorten("antenna_boom_tip_fairing", 14)
+    'antenna…airing'
+    """
+    shown = visible(text)
+    if len(shown) <= limit:
+        return shown
+    head = (limit - 1 + 1) // 2
+    return f"{shown[:head]}…{shown[len(shown) - (limit - 1 - head) :]}"
+
+
+def column(table: Table, name: str) -> Floats:
+    """Return a column as float64; all NaN where the table has no such column."""
+    if name in table:
+        return floats(table[name])
+    return np.full(row_count(table), np.nan)
+
+
+def row_count(table: Table) -> int:
+    """Return the number of rows."""
+    for name in table:
+        return len(np.asarray(table[name]))
+    return 0
+
+
+def texts(table: Table, name: str) -> list[str]:
+    """Return a column as a list of str."""
+    return [str(value) for value in np.asarray(table[name], dtype=object)]
+
+
+def has_numbers(table: Table, name: str) -> bool:
+    """Return whether a column exists and holds at least one finite number.
+
+    Examples
+    --------
+    >>> has_numbers({"time_s": [float("nan"), 1.0]}, "time_s"), has_numbers({}, "time_s")
+    (True, False)
+    """
+    return name in table and bool(np.isfinite(column(table, name)).any())
+
+
+def length_names(columns: Iterable[str]) -> list[str]:
+    """Return the lengths that a points table knows, in the order of its columns.
+
+    Examples
+    --------
+    >>> length_names(["time_s", "knudsen.reference", "regime.reference", "knudsen.seal.2"])
+    ['reference', 'seal.2']
+    """
+    prefix = "knudsen."
+    return [name.removeprefix(prefix) for name in map(str, columns) if name.startswith(prefix)]
+
+
+def length_sizes(points: Table) -> dict[str, float]:
+    """Return each length in metres, as free path over Knudsen number [m]; NaN where neither is known."""
+    path = column(points, "mean_free_path_m")
+    sizes = {}
+    for name in length_names(points):
+        with np.errstate(divide="ignore", invalid="ignore"):
+            ratio = path / column(points, f"knudsen.{name}")
+        good = ratio[np.isfinite(ratio)]
+        sizes[name] = float(good[0]) if good.size else float("nan")
+    return sizes
