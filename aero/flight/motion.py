@@ -1,0 +1,372 @@
+"""Three degrees of freedom: a point mass with drag and lift over a turning planet.
+
+Gravity, rotation, air and drag are arguments, so that closed-form cases run through the same integrator.
+"""
+
+from __future__ import annotations
+
+from collections.abc import Callable
+from dataclasses import dataclass
+from typing import Any, Protocol
+
+import numpy as np
+
+from aero.air.state import Air
+from aero.arrays import ArrayLike, Floats, floats
+from aero.errors import InputError
+from aero.flight.planet import Planet, apogee_height
+
+MODEL_TOP = 1000e3  # m: the standard of 1976 ends here; above it the flight is taken to be in a vacuum
+CEILING = 200e3  # m: below it a climbing flight is not yet "leaving" (judgement)
+DAY = 86400.0  # s: a flight that neither lands nor leaves is stopped here unless `until` says otherwise
+VERTICAL = 0.02  # cosine of the flight-path angle, 1.1 degrees, under which lift fades (judgement)
+LONGEST_STEP = 30.0  # s: no pass through the air, about 200 s and more at orbital speed, is stepped over
+
+_GAUSS_NODES, _GAUSS_WEIGHTS = np.polynomial.legendre.leggauss(6)
+
+
+class AirAlong(Protocol):
+    """The air along a flight: what an atmosphere answers at a time and place."""
+
+    def __call__(self, time: Floats, altitude: Floats, latitude: Floats, longitude: Floats) -> Air:
+        """Return the air at each point; time [s], altitude [m], angles [rad]."""
+
+
+class AreaPerMass(Protocol):
+    """Drag and lift of a body in given air, per mass and dynamic pressure."""
+
+    def __call__(self, air: Air, speed: Floats) -> tuple[Floats, Floats]:
+        """Return C_D A/m and C_L A/m [m2/kg] at each point; lift positive upwards."""
+
+
+@dataclass(frozen=True, eq=False)
+class States:
+    """Where a flight is at given times, and how it moves over the planet and through the air.
+
+    Attributes
+    ----------
+    time : (n,) array [s]
+    altitude : (n,) array [m]
+        Over the ellipsoid.
+    latitude, longitude : (n,) array [rad]
+        Geodetic.
+    speed : (n,) array [m/s]
+        Relative to the air, which turns with the planet.
+    flight_path_angle : (n,) array [rad]
+        Of that velocity over the geodetic horizontal; negative down.
+    heading : (n,) array [rad]
+        Of that velocity, from north through east, 0 to 2 pi.
+    position, velocity : (n, 3) array [m], [m/s]
+        Fixed to the turning planet.
+    """
+
+    time: Floats
+    altitude: Floats
+    latitude: Floats
+    longitude: Floats
+    speed: Floats
+    flight_path_angle: Floats
+    heading: Floats
+    position: Floats
+    velocity: Floats
+
+
+@dataclass(frozen=True, eq=False)
+class Path:
+    """A flown path: known at every time between its ends.
+
+    Attributes
+    ----------
+    planet : Planet
+    nodes : (m,) array [s]
+        Ends of the integrator's steps, from 0 to the end of the flight.
+    dense : callable
+        Times (n,) [s] -> state (6, n).
+    ended_by : str
+        "ground", "left the atmosphere", "until" or "time limit".
+    """
+
+    planet: Planet
+    nodes: Floats
+    dense: Callable[[Floats], Floats]
+    ended_by: str
+
+    @property
+    def duration(self) -> float:
+        """Time of the end of the flight [s]."""
+        return float(self.nodes[-1])
+
+    def at(self, time: ArrayLike) -> States:
+        """Return the states at the given times (n,) [s]."""
+        when = np.atleast_1d(floats(time))
+        state = self.dense(when)
+        return states(self.planet, when, state[:3].T, state[3:].T)
+
+    def peak(self, function: Callable[[States], Floats]) -> tuple[float, float]:
+        """Return time and value of the largest value along the whole path, not only at samples.
+
+        Parameters
+        ----------
+        function : callable
+            States -> values (n,). NaN counts as no value.
+
+        Returns
+        -------
+        time : float [s]
+            To 1e-6 s or to rounding; NaN if there is no value anywhere.
+        value : float
+
+        Notes
+        -----
+        Eight points in each integration step bracket the peak; the bracket is then narrowed sixteenfold a
+        round.
+        """
+        shares = np.linspace(0.0, 1.0, 8, endpoint=False)
+        times = np.append((self.nodes[:-1, None] + np.diff(self.nodes)[:, None] * shares).ravel(), self.nodes[-1])
+        values = function(self.at(times))
+        if np.all(np.isnan(values)):
+            return float("nan"), float("nan")
+        while True:
+            best = int(np.nanargmax(values))
+            low, high = times[max(best - 1, 0)], times[min(best + 1, times.size - 1)]
+            if high - low <= max(1e-6, 1e-14 * high):
+                return float(times[best]), float(values[best])
+            times = np.union1d(np.linspace(low, high, 33), times[best])
+            values = function(self.at(times))
+
+    def integral(self, function: Callable[[States], Floats]) -> float:
+        """Return the integral over time of a function of the states, by Gauss's rule in each step.
+
+        Parameters
+        ----------
+        function : callable
+            States -> values (n,).
+
+        Returns
+        -------
+        float
+            In the function's unit times seconds.
+        """
+        half = 0.5 * np.diff(self.nodes)
+        middle = 0.5 * (self.nodes[:-1] + self.nodes[1:])
+        times = (middle[:, None] + half[:, None] * _GAUSS_NODES).ravel()
+        values = function(self.at(times)).reshape(half.size, -1)
+        return float(np.sum(half * np.sum(values * _GAUSS_WEIGHTS, axis=-1)))
+
+
+def states(planet: Planet, time: Floats, position: Floats, velocity: Floats) -> States:
+    """Return positions and velocities as altitude, speed and angles.
+
+    Parameters
+    ----------
+    planet : Planet
+    time : (n,) array [s]
+    position, velocity : (n, 3) array [m], [m/s]
+        Fixed to the turning planet.
+
+    Returns
+    -------
+    States
+        Flight-path angle and heading of a vehicle at rest are 0.
+    """
+    latitude, longitude, altitude = planet.place(position)
+    east, north, up = (np.sum(velocity * axis, axis=-1) for axis in planet.axes(latitude, longitude))
+    level = np.hypot(east, north)
+    return States(
+        time=time,
+        altitude=altitude,
+        latitude=latitude,
+        longitude=longitude,
+        speed=np.hypot(level, up),
+        flight_path_angle=np.arctan2(up, level),
+        heading=np.arctan2(east, north) % (2.0 * np.pi),
+        position=position,
+        velocity=velocity,
+    )
+
+
+def velocity_over_planet(
+    planet: Planet, position: Floats, speed: float, flight_path_angle: float, heading: float
+) -> Floats:
+    """Return the velocity (3,) [m/s] with the given speed and angles at a position (3,)."""
+    latitude, longitude, _ = planet.place(position)
+    east, north, up = planet.axes(latitude, longitude)
+    level = speed * np.cos(flight_path_angle)
+    return floats(
+        level * np.sin(heading) * east + level * np.cos(heading) * north + speed * np.sin(flight_path_angle) * up
+    )
+
+
+def frame_velocity(planet: Planet, position: Floats) -> Floats:
+    """Return the velocity omega x r (..., 3) [m/s] of the turning frame, and of the air, at a position."""
+    result = np.zeros_like(position)
+    result[..., 0] = -planet.rotation * position[..., 1]
+    result[..., 1] = planet.rotation * position[..., 0]
+    return result
+
+
+def mechanical_energy(planet: Planet, position: Floats, velocity: Floats) -> Floats:
+    """Return the energy per mass that only drag changes, in the turning frame.
+
+    Parameters
+    ----------
+    planet : Planet
+    position, velocity : (..., 3) array [m], [m/s]
+
+    Returns
+    -------
+    (...,) array [J/kg]
+
+    Notes
+    -----
+    E = V^2/2 + Phi - omega^2 (x^2 + y^2)/2, Jacobi's integral: the Coriolis force and lift do no work, so
+    dE/dt = -D V/m with V relative to the air.
+    """
+    square = np.sum(velocity * velocity, axis=-1)
+    across = position[..., 0] ** 2 + position[..., 1] ** 2
+    return floats(0.5 * square + planet.potential(position) - 0.5 * planet.rotation**2 * across)
+
+
+def integrate(
+    position: Floats,
+    velocity: Floats,
+    *,
+    planet: Planet,
+    air: AirAlong | None = None,
+    area_per_mass: AreaPerMass | None = None,
+    until: float | None = None,
+    tolerance: float = 1e-10,
+) -> Path:
+    """Fly a point mass until it reaches the ground, leaves the atmosphere for good, or time is up.
+
+    Parameters
+    ----------
+    position, velocity : (3,) array [m], [m/s]
+        At time 0, fixed to the turning planet.
+    planet : Planet
+        Gravity and rotation.
+    air : callable, optional
+        The air along the flight. None: a vacuum, as it is above `MODEL_TOP`.
+    area_per_mass : callable, optional
+        Drag and lift. None: none.
+    until : float, optional [s]
+        Time at which the flight ends at the latest; one day when None.
+    tolerance : float
+        Relative tolerance a step; positions also to `tolerance` metres, velocities to a thousandth of it.
+
+    Returns
+    -------
+    Path
+
+    Raises
+    ------
+    InputError
+        If the air or the drag has no answer at a point of the flight.
+
+    Notes
+    -----
+    r'' = g - 2 omega x v - omega x (omega x r) - (D/m) v/V + (L/m) l, with l normal to the velocity in the
+    vertical plane through it, upwards (bank angle 0). A vehicle in vertical flight has no such direction, so
+    within 1.1 degrees of the vertical lift fades to 0 in proportion; without that, lift downwards would turn
+    over and over at the vertical. DOP853 [HairerNorsettWanner1993].
+
+    The flight has left for good when it climbs through `MODEL_TOP`, or through the higher of `CEILING` and
+    the starting altitude with the apogee of its drag-free path above `MODEL_TOP` (or none). A skip with
+    a lower apogee is followed back in. A flight that begins above `CEILING` and climbing ends at `MODEL_TOP`.
+    """
+    from scipy.integrate import solve_ivp
+
+    derivative = _equations(planet, air, area_per_mass)
+    limit = DAY if until is None else until
+    solution = solve_ivp(
+        derivative,
+        (0.0, limit),
+        np.concatenate([position, velocity]),
+        method="DOP853",
+        rtol=tolerance,
+        atol=np.repeat([tolerance, 1e-3 * tolerance], 3),
+        max_step=LONGEST_STEP,
+        dense_output=True,
+        events=_events(planet, position, velocity),
+    )
+    if solution.status < 0:
+        raise InputError(f"the flight cannot be integrated beyond {solution.t[-1]:.6g} s ({solution.message})")
+    if solution.status == 1:
+        ended_by = "ground" if solution.t_events[0].size else "left the atmosphere"
+    else:
+        ended_by = "time limit" if until is None else "until"
+    return Path(planet=planet, nodes=floats(solution.t), dense=solution.sol, ended_by=ended_by)
+
+
+def _equations(
+    planet: Planet, air: AirAlong | None, area_per_mass: AreaPerMass | None
+) -> Callable[[float, Floats], Floats]:
+    rate = planet.rotation
+
+    def derivative(time: float, state: Floats) -> Floats:
+        position, velocity = state[:3], state[3:]
+        result = np.empty(6)
+        result[:3] = velocity
+        force = planet.gravity(position)
+        force[0] += rate * (2.0 * velocity[1] + rate * position[0])
+        force[1] += rate * (rate * position[1] - 2.0 * velocity[0])
+        if air is not None and area_per_mass is not None:
+            force += _aerodynamic(time, position, velocity)
+        result[3:] = force
+        return result
+
+    def _aerodynamic(time: float, position: Floats, velocity: Floats) -> Floats:
+        assert air is not None
+        assert area_per_mass is not None
+        latitude, longitude, altitude = planet.place(position)
+        speed = np.sqrt(np.sum(velocity * velocity))
+        if altitude > MODEL_TOP or speed == 0.0:
+            return np.zeros(3)
+        # trial steps reach under the ground before the event is found; they only need some finite air
+        around = air(floats([time]), floats([max(altitude, 0.0)]), floats([latitude]), floats([longitude]))
+        drag, lift = (float(part[0]) for part in area_per_mass(around, floats([speed])))
+        pressure = 0.5 * float(around.density[0]) * speed * speed
+        if not np.isfinite(pressure * (drag + lift)):
+            _no_answer(around, drag + lift, float(altitude), float(speed))
+        force = -pressure * drag / speed * velocity
+        if lift != 0.0:
+            up = planet.axes(latitude, longitude)[2]
+            normal = up - np.sum(up * velocity) / speed**2 * velocity
+            length = np.sqrt(np.sum(normal * normal))  # cosine of the flight-path angle
+            force += pressure * lift / max(length, VERTICAL) * normal
+        return floats(force)
+
+    return derivative
+
+
+def _no_answer(air: Air, coefficient: float, altitude: float, speed: float) -> None:
+    where = f"{altitude / 1e3:.4g} km and {speed:.5g} m/s"
+    if not np.isfinite(air.density[0]):
+        raise InputError(
+            f"atmosphere '{air.model}' has no air at {where}, expected one that covers the whole flight",
+            remedy="choose another atmosphere or extend the table",
+        )
+    raise InputError(
+        f"the vehicle's drag has no answer at {where} ({coefficient})",
+        remedy="give [continuum] coefficients that cover the flight, or a ballistic coefficient",
+    )
+
+
+def _events(planet: Planet, position: Floats, velocity: Floats) -> list[Any]:
+    start = states(planet, np.zeros(1), position[None], velocity[None])
+    ceiling = max(CEILING, float(start.altitude[0]))
+    if start.altitude[0] > CEILING and start.flight_path_angle[0] > 0.0:
+        ceiling = MODEL_TOP
+
+    def ground(time: float, state: Floats) -> float:
+        return float(planet.place(state[:3])[2])
+
+    def left(time: float, state: Floats) -> float:
+        altitude = float(planet.place(state[:3])[2])
+        above = min(altitude - ceiling, apogee_height(state[:3], state[3:], planet) - MODEL_TOP)
+        return max(above, altitude - MODEL_TOP)
+
+    for event, direction in ((ground, -1.0), (left, 1.0)):
+        event.terminal = True  # type: ignore[attr-defined]
+        event.direction = direction  # type: ignore[attr-defined]
+    return [ground, left]
