@@ -135,7 +135,7 @@ def sphere_whole(radius: float) -> Facets:
 
 def cylinder_mantle(radius: float, length: float) -> Facets:
     """Return the mantle of a cylinder across the flow."""
-    angle, weight = _rule(np.arange(7) * np.pi / 6.0)
+    angle, weight = _rule(floats(np.arange(7) * np.pi / 6.0))
     areas = weight * 2.0 * radius * length
     return Facets(np.cos(angle), areas, np.zeros_like(areas))
 

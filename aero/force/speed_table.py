@@ -149,7 +149,7 @@ def angle_table(shape: Shape, diffuse_fraction: float) -> AngleTable:
 
 def evaluate(coefficients: Floats, cell: np.ndarray, fraction: Floats) -> Floats:
     """Return cubics (4, CELLS) at a cell and the fraction of it."""
-    result = coefficients[3].take(cell, mode="clip")
+    result: Floats = coefficients[3].take(cell, mode="clip")
     for order in (2, 1, 0):
         result *= fraction
         result += coefficients[order].take(cell, mode="clip")
