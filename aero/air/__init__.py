@@ -72,7 +72,7 @@ ATMOSPHERES: dict[str, Model] = {
         Msis.altitude_range,
     ),
     "msis-2.1": Model(
-        "NRLMSIS 2.1, 0 to 1000 km: place, date and solar activity; 11-13 % thinner at 80-90 and 120-200 km",
+        "NRLMSIS 2.1, 0 to 1000 km: place, date and solar activity; 11-14 % thinner at 80-90 and 120-200 km",
         partial(Msis, "msis-2.1"),
         Msis.needs_place,
         Msis.altitude_range,

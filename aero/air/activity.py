@@ -136,7 +136,7 @@ def _observed(
 ) -> Indices:
     i = day - history.first_day
     k = np.floor_divide(hours, 3) - 8 * history.first_day
-    total = np.concatenate([[0.0], np.cumsum(history.ap3)])  # of whole numbers: exact
+    total = history.ap3_sum
     ap = np.empty((day.size, 7), order="F")
     ap[:, 0] = history.ap[i]
     for back in range(4):

@@ -5,7 +5,7 @@ from __future__ import annotations
 import csv
 import hashlib
 from dataclasses import dataclass
-from functools import cache
+from functools import cache, cached_property
 from pathlib import Path
 
 import numpy as np
@@ -71,6 +71,11 @@ class History:
     def last_day(self) -> int:
         """Last observed day [days since 1970]."""
         return self.first_day + self.ap.size - 1
+
+    @cached_property
+    def ap3_sum(self) -> Floats:
+        """Running sum of `ap3` (8 n + 1,), from 0: of whole numbers, so that differences are exact."""
+        return np.concatenate([[0.0], np.cumsum(self.ap3)])
 
 
 @cache

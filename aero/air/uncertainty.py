@@ -56,7 +56,7 @@ def msis(altitude: Floats, f107a: ArrayLike = 140.0, ap: ArrayLike = 15.0) -> tu
 
     Notes
     -----
-    Judgement. The two versions share one table: they differ from each other by 11-13 % at 80-90 and
+    Judgement. The two versions share one table: they differ from each other by 11-14 % at 80-90 and
     120-200 km, which lies within it. At deep solar minimum both are too dense above 250 km by about
     25 +- 15 %; the low column is wide enough to hold that, the result is not corrected for it.
 
