@@ -55,52 +55,57 @@ def assemble(
     notes = [*told.notes, *layout.notes]
     choices = _choices(table, notes)
     _needed(table, choices)
-    faults = Faults(table)
-    si = {
-        name: column.si(table.values[column.index])
-        for name, column in layout.columns.items()
-        if name != "time"
-    }
-    for name in told.fixed:
-        si[name] = np.full(table.count, told.fixed[name])
-    kind = choices["altitude kind"]
-    given = si["altitude"]
-    with np.errstate(all="ignore"):  # bad cells are still among them
-        if kind != "geodetic":
-            si["altitude"] = ALTITUDE_KINDS[kind](given, si.get("latitude", 0.0))
+    faults, kind = Faults(table), choices["altitude kind"]
+    si, given = _si(table, kind)
     time, epoch = _time(table, after, time_zero, notes)
     _find(table, faults, si, time, kind, after)
+    if faults.bad is not None and not skip_bad_rows:
+        raise faults.error()
+    keep = slice(None) if faults.bad is None else ~faults.bad
     if faults.bad is not None:
-        if not skip_bad_rows:
-            raise faults.error()
-        keep = ~faults.bad
         si = {name: values[keep] for name, values in si.items()}
         given, time = given[keep], None if time is None else time[keep]
+    if after is not None:
+        notes.clear()  # said with the first piece
     skipped = faults.skipped()
     _enough(table, len(si["altitude"]), len(skipped), least)
     if skipped:
         notes.append(
             f"{len(skipped)} of {table.count} rows were left out "
-            f"(first: {table.lines_are} {skipped[0].line}, {skipped[0].reason})"
+            f"(first: {table.lines_are} {skipped[0].line}: {skipped[0].reason})"
         )
     if kind != "geodetic":
         notes.append(_moved(given, si["altitude"], kind))
     if choices["velocity frame"] == "inertial":
         notes.append(_turned(si))
-    _time_notes(time, notes)
-    keep_rows = slice(None) if faults.bad is None else ~faults.bad
+    _time_notes(time, after, notes)
     return Trajectory(
         name=told.name or PurePath(table.file_name).stem,
         time=time,
         epoch=epoch,
         velocity_frame=choices["velocity frame"],
-        extra={name: table.values[index][keep_rows] for index, name in layout.extras.items()},
+        extra={name: table.values[index][keep] for index, name in layout.extras.items()},
         notes=tuple(notes),
         skipped=skipped,
         source=table.file_name,
         digest=table.digest,
         **{MEANINGS[name].field: values for name, values in si.items()},
     )
+
+
+def _si(table: Table, kind: str) -> tuple[dict[str, Floats], Floats]:
+    """Return every column but the time in SI by meaning, and the altitudes before they became geodetic."""
+    si = {
+        name: column.si(table.values[column.index])
+        for name, column in table.layout.columns.items()
+        if name != "time"
+    }
+    si |= {name: np.full(table.count, value) for name, value in table.metadata.fixed.items()}
+    given = si["altitude"]
+    with np.errstate(all="ignore"):  # bad cells are still among them
+        if kind != "geodetic":
+            si["altitude"] = ALTITUDE_KINDS[kind](given, si.get("latitude", 0.0))
+    return si, given
 
 
 def _choices(table: Table, notes: list[str]) -> dict[str, str]:
@@ -235,10 +240,13 @@ def _turned(si: dict[str, Floats]) -> str:
     return f"inertial speeds were turned into air-relative ones: {shift.min():+.1f} to {shift.max():+.1f} m/s"
 
 
-def _time_notes(time: Floats | None, notes: list[str]) -> None:
+def _time_notes(time: Floats | None, after: Trajectory | None, notes: list[str]) -> None:
     if time is None:
-        notes.append("no time column: points are taken one by one, without segments or loads")
+        if after is None:
+            notes.append("no time column: points are taken one by one, without segments or loads")
         return
+    if after is not None and after.time is not None:
+        time = np.concatenate([after.time[-1:], time])
     step = np.diff(time)
     if step.size < 2:
         return

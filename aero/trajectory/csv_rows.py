@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import csv
 import io
+import re
 from collections.abc import Iterator, Sequence
 from dataclasses import dataclass, field
 from functools import cached_property
@@ -20,6 +21,7 @@ from aero.trajectory.csv_head import Head, is_number
 from aero.units import utc
 
 _PROBE_ROWS = 100  # looked at to tell names such as 007 from numbers
+_WHOLE = re.compile(r"\s*-?[0-9]+\s*")
 _CHUNK_ROWS = 16_384
 
 
@@ -45,7 +47,6 @@ class Rows:
         reader = csv.reader(
             io.TextIOWrapper(stream, encoding="utf-8", newline=""),
             delimiter=self._head.delimiter,
-            skipinitialspace=True,
             strict=True,
         )
         before = self._head.data_line - 1
@@ -101,21 +102,36 @@ def fast_columns(data: bytes, head: Head, layout: Layout, first: list[list[str]]
     -----
     Whatever this reads, `careful_columns` reads the same; it declines whenever it is not sure.
     """
-    import pyarrow as pa
-    from pyarrow import csv as arrow_csv
-
+    if b"0x" in data or b"0X" in data:  # would be taken for whole numbers in hexadecimal; here they are text
+        return None
     names = [str(place) for place in range(len(head.headers))]
     dates = {
         str(c.index) for c in layout.columns.values() if c.meaning.name == "time" and c.unit in (None, "UTC")
     }
     numbers = {str(column.index) for column in layout.columns.values()} - dates
-    texts = {names[place] for place in layout.extras if _leading_zeros(first, place)}
-    types = {
-        **{name: pa.float64() for name in numbers},
-        **{name: pa.string() for name in dates | texts | {names[place] for place in layout.nameless}},
-    }
+    texts = dates | {names[place] for place in layout.nameless}
+    texts |= {names[place] for place in layout.extras if _leading_zeros(first, place)}
+    table = _arrow_table(data, head, names, numbers, texts)
+    # The last row of a spreadsheet may be all empty.
+    if table is None or all(table.column(name)[-1].as_py() in (None, "") for name in names):
+        return None
+    values: dict[int, NDArray[Any]] = {}
+    for place, name in enumerate(names):
+        found = _dates(table.column(name)) if name in dates else _array(table.column(name))
+        if found is None:
+            return None
+        values[place] = found
+    return Found(table.num_rows, values)
+
+
+def _arrow_table(data: bytes, head: Head, names: list[str], numbers: set[str], texts: set[str]) -> Any:
+    """Return all rows as an Arrow table; None when it has none or is not sure of them."""
+    import pyarrow as pa
+    from pyarrow import csv as arrow_csv
+
+    types = {**dict.fromkeys(numbers, pa.float64()), **dict.fromkeys(texts, pa.string())}
     quotes = b'"' in data
-    for _ in range(2):
+    while True:
         try:
             table = arrow_csv.read_csv(
                 pa.py_buffer(memoryview(data)[head.data_at :]),
@@ -129,25 +145,16 @@ def fast_columns(data: bytes, head: Head, layout: Layout, first: list[list[str]]
                     strings_can_be_null=False,
                 ),
             )
-            # Dates and times of day among the columns carried through stay the text they are.
-            plain = {n for n in names if n not in types and not _carried_as_is(table.column(n).type)}
-            if not plain:
-                break
-            types |= {name: pa.string() for name in plain}
         except pa.ArrowException:
             return None
-    # An unclosed quote swallows rows without a word; and the last row of a spreadsheet may be all empty.
-    if quotes and table.num_rows != _filled_lines(data[head.data_at :]):
-        return None
-    if table.num_rows == 0 or all(table.column(name)[-1].as_py() in (None, "") for name in names):
-        return None
-    values: dict[int, NDArray[Any]] = {}
-    for place, name in enumerate(names):
-        found = _dates(table.column(name)) if name in dates else _array(table.column(name))
-        if found is None:
-            return None
-        values[place] = found
-    return Found(table.num_rows, values)
+        # Dates and times of day among the columns carried through stay the text they are.
+        plain = {n for n in names if n not in types and not _carried_as_is(table.column(n).type)}
+        if not plain:
+            break
+        types |= dict.fromkeys(plain, pa.string())
+    # An unclosed quote swallows rows without a word.
+    lost = quotes and table.num_rows != _filled_lines(data[head.data_at :])
+    return None if lost or not table.num_rows else table
 
 
 def _filled_lines(data: bytes) -> int:
@@ -264,9 +271,9 @@ def carried(texts: list[str], broken: dict[int, str]) -> NDArray[Any]:
     zeros = any(len(text) > 1 and text[0] == "0" and text.isdigit() for text in whole[:_PROBE_ROWS])
     if zeros or not all(is_number(text) for text in whole):
         return np.array(texts, dtype=object)
-    if len(whole) == len(texts):
+    if len(whole) == len(texts) and all(_WHOLE.fullmatch(text) for text in texts):
         try:
             return np.array([int(text) for text in texts], dtype=np.int64)
-        except (ValueError, OverflowError):
+        except OverflowError:
             pass
     return np.array([_number(text) for text in texts], dtype=np.float64)

@@ -2,7 +2,9 @@
 
 from __future__ import annotations
 
+import dataclasses
 import hashlib
+import re
 from collections.abc import Iterator
 from concurrent.futures import ThreadPoolExecutor
 from pathlib import Path
@@ -19,6 +21,7 @@ from aero.trajectory.table import Table
 from aero.trajectory.trajectory import Trajectory
 
 PIECE_ROWS = 131_072
+_INDEX = re.compile(r"__index_level_\d+__")  # row numbers a data frame leaves behind
 # What libraries write of their own into the metadata of a file.
 _FOREIGN = ("pandas", "arrow:schema", "geo", "org.", "parquet.", "spark", "polars", "writer")
 
@@ -103,7 +106,6 @@ def parquet_pieces(
         start += batch.num_rows
         points += len(piece)
         if len(piece):
-            told.notes.clear()
             before = piece
             yield piece
     if points < 2:
@@ -134,6 +136,8 @@ def _open(path: str | Path) -> tuple[Any, Layout, Metadata]:
         ) from None
     schema = file.schema_arrow
     layout = lay_out(schema.names, source=source)
+    index = {place: name for place, name in layout.extras.items() if not _INDEX.fullmatch(name)}
+    layout = dataclasses.replace(layout, extras=index)
     _check_types(schema, layout, source)
     return file, layout, understand(_statements(schema.metadata or {}), source=source)
 

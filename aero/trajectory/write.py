@@ -3,7 +3,6 @@
 from __future__ import annotations
 
 import os
-import tempfile
 from collections.abc import Sequence
 from pathlib import Path
 from typing import Any
@@ -52,7 +51,7 @@ def write_trajectory(
 
     Examples
     --------
-    >>> from aero.trajectory import read_trajectory
+    >>> import tempfile
     >>> flight = Trajectory(name="two points", time=[0, 10], altitude=[120e3, 118e3], speed=[7.5e3, 7.5e3])
     >>> with tempfile.TemporaryDirectory() as folder:
     ...     write_trajectory(flight, f"{folder}/two.csv")
@@ -70,22 +69,22 @@ def write_trajectory(
             source=str(path),
             remedy="rename it",
         )
+    if path.is_dir():
+        raise InputError("is a folder, expected a file", source=str(path), remedy="name a file in it")
     if path.exists() and not replace:
         raise InputError("exists already", source=str(path), remedy="name another file or pass --replace")
     columns = table_of(trajectory)
     if not path.parent.is_dir():
         raise InputError("its folder does not exist", source=str(path), remedy="make it first")
-    handle, beside = tempfile.mkstemp(dir=path.parent, prefix=f".{path.name}.")
-    os.close(handle)
+    beside = path.with_name(f".{path.name}.{os.getpid()}.part")
     try:
         if path.suffix.lower() == ".parquet":
             _write_parquet(columns, metadata_of(trajectory), beside)
         else:
             _write_text(columns, metadata_of(trajectory), comments, beside, path.suffix.lower())
-        Path(beside).chmod(0o666 & ~_umask())
-        Path(beside).replace(path)
+        beside.replace(path)
     finally:
-        Path(beside).unlink(missing_ok=True)
+        beside.unlink(missing_ok=True)
 
 
 def metadata_of(trajectory: Trajectory) -> dict[str, str]:
@@ -127,14 +126,14 @@ def _degrees(angles: Floats) -> Floats:
 
 
 def _write_text(
-    columns: dict[str, NDArray[Any]], told: dict[str, str], comments: Sequence[str], path: str, suffix: str
+    columns: dict[str, NDArray[Any]], told: dict[str, str], comments: Sequence[str], path: Path, suffix: str
 ) -> None:
     import polars
 
     lines = [f"# comment: {line}" for text in comments for line in text.splitlines()]
     lines += [f"# {key}: {value}" for key, value in told.items()]
     frame = polars.DataFrame({name: _plain(values) for name, values in columns.items()})
-    with Path(path).open("wb") as stream:
+    with path.open("wb") as stream:
         stream.write("".join(f"{line}\n" for line in lines).encode("utf-8"))
         frame.write_csv(
             stream, separator="\t" if suffix == ".tsv" else ",", datetime_format="%Y-%m-%dT%H:%M:%S%.6f"
@@ -151,15 +150,9 @@ def _plain(values: NDArray[Any]) -> Any:
     return values
 
 
-def _write_parquet(columns: dict[str, NDArray[Any]], told: dict[str, str], path: str) -> None:
+def _write_parquet(columns: dict[str, NDArray[Any]], told: dict[str, str], path: Path) -> None:
     import pyarrow as pa
     from pyarrow import parquet
 
     table = pa.table(columns)
     parquet.write_table(table.replace_schema_metadata(told), path, use_dictionary=False)
-
-
-def _umask() -> int:
-    mask = os.umask(0)
-    os.umask(mask)
-    return mask
