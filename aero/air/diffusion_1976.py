@@ -141,9 +141,7 @@ class _Column:
         self.gravity = GRAVITY * np.square(RADIUS / (RADIUS + self.altitude))  # eq. 17
         self.g_over_rt = self.gravity / (GAS_CONSTANT * self.temperature)
         self.eddy = eddy_diffusion(self.altitude)
-        # Below 100 km air stays mixed and its mean mass the sea-level one; above, nitrogen's own.
-        mixed = self.altitude[:, 1:2] < 100e3
-        self.mean_mass = np.where(mixed, MOLAR_MASS_0, GASES["N2"].molar_mass)
+        self.mixed = self.altitude[:, 1:2] < 100e3
 
     @staticmethod
     def integral(f: Floats) -> Floats:
@@ -158,11 +156,15 @@ class _Column:
         log_n = np.log(gas.at_86_km * T_7) - np.log(self.temperature) - self.integral(f)
         return log_n, -self.gradient / self.temperature - f
 
-    def diffuse(self, gas: Gas, through: Floats) -> tuple[Floats, Floats]:
-        """Solve eq. 36 for a gas that diffuses through a number density `through`."""
+    def mean_mass(self, above: Floats | float) -> Floats:
+        """Mean molar mass M of the air a gas is mixed with: the sea-level one up to 100 km, then `above`."""
+        return np.where(self.mixed, MOLAR_MASS_0, above)
+
+    def diffuse(self, gas: Gas, through: Floats, mean_mass: Floats) -> tuple[Floats, Floats]:
+        """Solve eq. 36 for a gas that diffuses through a number density `through` of a mean molar mass."""
         d = _molecular_diffusion(gas, through, self.temperature)
         share = d / (d + self.eddy)
-        mass = share * gas.molar_mass + (1.0 - share) * self.mean_mass
+        mass = share * gas.molar_mass + (1.0 - share) * mean_mass
         thermal = gas.alpha * share * self.gradient / self.temperature
         return self.solve(gas, self.g_over_rt * mass + thermal + flux_term(gas, self.altitude))
 
@@ -199,16 +201,23 @@ def table() -> dict[str, Floats]:
     Notes
     -----
     The equations are coupled one way only, so each is a quadrature: N2 alone; O and O2 through N2; Ar and He
-    through N2, O and O2; H through all. Simpson's rule over 250 m cells with one-sided ends: halving the
-    cells moves no density by more than 4e-7 (just under 110 km, where the gradient bends most).
+    through N2, O and O2; H through all. Above 100 km the mean molar mass is that of N2 for N2, O and O2,
+    and that of N2, O and O2 together for Ar and He: with it the printed argon and helium come out to
+    their digits, with nitrogen's alone they lie 0.35 and 0.08 % off. Simpson's rule over 250 m cells with
+    one-sided ends: halving the cells moves no density by more than 4e-7 (just under 110 km, where the
+    gradient bends most).
     """
     column = _Column()
+    mass = column.mean_mass(GASES["N2"].molar_mass)
     n: dict[str, tuple[Floats, Floats]] = {}
-    n["N2"] = column.solve(GASES["N2"], column.g_over_rt * column.mean_mass)  # eq. 33 in the form of eq. 36
+    n["N2"] = column.solve(GASES["N2"], column.g_over_rt * mass)  # eq. 33 in the form of eq. 36
     through = np.exp(n["N2"][0])
-    n["O"], n["O2"] = (column.diffuse(GASES[name], through) for name in ("O", "O2"))
-    through = through + np.exp(n["O"][0]) + np.exp(n["O2"][0])
-    n["Ar"], n["He"] = (column.diffuse(GASES[name], through) for name in ("Ar", "He"))
+    n["O"], n["O2"] = (column.diffuse(GASES[name], through, mass) for name in ("O", "O2"))
+    three = {name: np.exp(n[name][0]) for name in ("N2", "O", "O2")}
+    through = three["N2"] + three["O"] + three["O2"]
+    weighed = np.sum([GASES[name].molar_mass * three[name] for name in three], axis=0)
+    mass = column.mean_mass(weighed / through)
+    n["Ar"], n["He"] = (column.diffuse(GASES[name], through, mass) for name in ("Ar", "He"))
     through = through + np.exp(n["Ar"][0]) + np.exp(n["He"][0])
     n["H"] = column.hydrogen(through)
     out = {"temperature": _cells(column.temperature, column.gradient)}

@@ -40,14 +40,18 @@ def _worst(ours, theirs):
     return np.max(np.abs(ours[known] / theirs[known] - 1.0))
 
 
-# NOAA-S/T 76-1562, tables I and VIII. 0.1 % is the agreement asked for; the print itself has four digits
-# (up to 5e-4) above 86 km, and its mass density at 1000 km differs by 0.08 % from the sum of its own species.
+# NOAA-S/T 76-1562, tables I and VIII. Pressure is printed to five digits, the others to four above 86 km: one
+# unit in the last place, or half of one, of a number that begins with 1.
 @pytest.mark.parametrize(
-    ("column", "attribute"),
-    [("pressure_Pa", "pressure"), ("density_kg_m3", "density"), ("number_density_m3", "number_density")],
+    ("column", "attribute", "tolerance"),
+    [
+        ("pressure_Pa", "pressure", 1e-4),
+        ("density_kg_m3", "density", 5e-4),
+        ("number_density_m3", "number_density", 5e-4),
+    ],
 )
-def test_printed_state(printed, air, column, attribute):
-    assert _worst(getattr(air, attribute), printed[column]) < 1e-3
+def test_printed_state(printed, air, column, attribute, tolerance):
+    assert _worst(getattr(air, attribute), printed[column]) < tolerance
 
 
 def test_printed_temperature(printed, air):
@@ -59,11 +63,11 @@ def test_printed_temperature(printed, air):
     np.testing.assert_allclose(scale, printed["temperature_K"], atol=0.0051, rtol=0)  # printed to 0.01 K
 
 
+# Four printed digits: half a unit in the last is up to 5e-4. One number, argon at 635 km, stands one unit low
+# in the table (1.612e4; ours 1.6134e4, its neighbours agree): a whole unit for argon.
 @pytest.mark.parametrize(
     ("name", "tolerance"),
-    # Four printed digits: half a unit in the last is up to 5e-4. Helium's print lies 0.07 % and argon's
-    # 0.31 % above an exact integration throughout (0.12 and 0.40 % at worst); 0.6 % is the agreement asked.
-    [("N2", 5.1e-4), ("O2", 5.1e-4), ("O", 5.1e-4), ("H", 5.1e-4), ("He", 2e-3), ("Ar", 6e-3)],
+    [("N2", 5e-4), ("O2", 5e-4), ("O", 5e-4), ("H", 5e-4), ("He", 5e-4), ("Ar", 1e-3)],
 )
 def test_printed_species(printed, air, name, tolerance):
     assert _worst(air.species[..., SPECIES.index(name)], printed[f"n_{name}"]) < tolerance
@@ -73,7 +77,7 @@ def test_printed_molar_mass(printed, air):
     known = np.isfinite(printed["molecular_weight_kg_kmol"])
     high = known & (printed["altitude_km"] >= 86)
     ours = air.molar_mass[high] * 1e3
-    # printed to 0.01; the digits of the printed densities behind it allow a little more
+    # printed to 0.01, cut or rounded
     np.testing.assert_allclose(ours, printed["molecular_weight_kg_kmol"][high], atol=0.0075, rtol=0)
 
 
@@ -128,9 +132,16 @@ def _rates(z, log_nt):
     n = np.exp(log_nt) / t
     eddy = float(upper.eddy_diffusion(np.array([z]))[0])
     g = lower.GRAVITY * (lower.RADIUS / (lower.RADIUS + z)) ** 2
-    mean = lower.MOLAR_MASS_0 if z < 100e3 else 28.0134
-    out = [-g * mean / (lower.GAS_CONSTANT * t)]
-    for name, through in (("O", n[0]), ("O2", n[0]), ("Ar", n[:3].sum()), ("He", n[:3].sum())):
+    mixed = z < 100e3
+    nitrogen = lower.MOLAR_MASS_0 if mixed else 28.0134
+    three = lower.MOLAR_MASS_0 if mixed else (n[:3] @ [28.0134, 15.9994, 31.9988]) / n[:3].sum()
+    out = [-g * nitrogen / (lower.GAS_CONSTANT * t)]
+    for name, through, mean in (
+        ("O", n[0], nitrogen),
+        ("O2", n[0], nitrogen),
+        ("Ar", n[:3].sum(), three),
+        ("He", n[:3].sum(), three),
+    ):
         gas = upper.GASES[name]
         d = gas.a / through * (t / 273.15) ** gas.b
         force = gas.molar_mass + mean * eddy / d + gas.alpha * lower.GAS_CONSTANT / g * gradient
