@@ -1,5 +1,6 @@
 """Knudsen numbers, regime tags, exact crossings, segments and the method each calls for."""
 
+from aero.callable_module import make_callable
 from aero.regime.crossings import Crossings, find_crossings
 from aero.regime.method import METHODS, advise
 from aero.regime.segments import Cuts, cut_segments
@@ -21,3 +22,5 @@ __all__ = [
     "regime",
     "regime_index",
 ]
+
+make_callable(__name__)

@@ -1,8 +1,7 @@
 """The flight between its samples: shape-preserving cubics in time.
 
 A shape-preserving cubic puts no hump where the samples have none, so a recorded altitude that climbs
-in steps stays monotone between them. The slopes are computed here in a dozen array operations, since the
-library's own interpolant costs ten times as much on a million samples.
+in steps stays monotone between them.
 """
 
 from __future__ import annotations
@@ -11,55 +10,9 @@ from dataclasses import dataclass
 
 import numpy as np
 
+from aero.air.cubic import monotone_slopes
 from aero.arrays import Floats, Times
 from aero.trajectory import Trajectory
-
-
-def monotone_slopes(time: Floats, values: Floats) -> Floats:
-    """Return slopes that keep the cubic monotone between samples [Fritsch1984].
-
-    Parameters
-    ----------
-    time : (n,) array, strictly ascending, n >= 2
-    values : (n,) array
-
-    Returns
-    -------
-    (n,) array
-        Weighted harmonic mean of the neighbouring secants, zero at local extremes; one-sided
-        three-point slopes at the ends, limited to keep the shape.
-
-    Examples
-    --------
-    >>> monotone_slopes(np.array([0.0, 1.0, 2.0]), np.array([0.0, 1.0, 1.0])).tolist()
-    [1.5, 0.0, 0.0]
-    """
-    step = np.diff(time)
-    secant = np.diff(values) / step
-    slopes = np.empty_like(values)
-    if values.size == 2:
-        slopes[:] = secant[0]
-        return slopes
-    left, right = secant[:-1], secant[1:]
-    weight_left = step[:-1] + 2.0 * step[1:]
-    weight_right = 2.0 * step[:-1] + step[1:]
-    product = left * right
-    with np.errstate(divide="ignore", invalid="ignore", over="ignore"):
-        inner = (weight_left + weight_right) * product / (weight_right * left + weight_left * right)
-    # Zero where the secants differ in sign or one vanishes: no hump that the samples do not have.
-    slopes[1:-1] = np.where(product > 0.0, inner, 0.0)
-    slopes[0] = _end_slope(step[0], step[1], secant[0], secant[1])
-    slopes[-1] = _end_slope(step[-1], step[-2], secant[-1], secant[-2])
-    return slopes
-
-
-def _end_slope(near: float, far: float, secant: float, next_secant: float) -> float:
-    slope = ((2.0 * near + far) * secant - near * next_secant) / (near + far)
-    if slope * secant <= 0.0:
-        return 0.0
-    if secant * next_secant <= 0.0 and abs(slope) > 3.0 * abs(secant):
-        return 3.0 * secant
-    return slope
 
 
 @dataclass(frozen=True, eq=False)

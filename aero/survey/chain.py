@@ -10,10 +10,10 @@ import numpy as np
 from aero.air.state import SPECIES, Air, Atmosphere
 from aero.arrays import Floats, Times
 from aero.body import Vehicle
-from aero.body.surface import accommodation
+from aero.body.surface import accommodation, accommodation_uncertainty
 from aero.bridge import Bridge, blend, bridge_for, similarity_number
 from aero.bridge.functions import Fraction
-from aero.bridge.uncertainty import accommodation_sigma, drag_band, heat_band
+from aero.bridge.uncertainty import drag_band, heat_band
 from aero.errors import InputError
 from aero.force import continuum, free_molecular
 from aero.gas import (
@@ -196,7 +196,7 @@ def _vehicle_columns(
     density_uncertainty: tuple[Floats, Floats],
 ) -> dict[str, np.ndarray]:
     """Return the columns of heating, then of drag, which needs the wall temperature that heating leaves."""
-    spread = accommodation_sigma(air.altitude)
+    spread = accommodation_uncertainty(air.altitude)
     wall, columns = _heat_columns(
         air, moving, accommodated, wall_choice(inputs, vehicle, settings), vehicle, settings, density_uncertainty, spread
     )
@@ -280,7 +280,7 @@ def _heat_columns(
     density_uncertainty: tuple[Floats, Floats],
     spread: Floats,
 ) -> tuple[Floats, dict[str, np.ndarray]]:
-    """Return the wall temperature and the columns of heating, NaN for a vehicle without a nose radius."""
+    """Return the wall temperature and the columns of heating, NaN where the vehicle has no nose radius."""
     heat_bridge = bridge_for(vehicle, "heating")
     heat = stagnation(
         vehicle, air, moving, accommodated, wall, correlation=settings.convective, exponent=heat_bridge.exponent

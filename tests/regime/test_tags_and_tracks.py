@@ -11,9 +11,10 @@ from scipy.integrate import quad
 from scipy.interpolate import PchipInterpolator
 
 import aero
+from aero.air.cubic import monotone_slopes
 from aero.errors import InputError
 from aero.regime import REGIMES, check_bounds, regime, regime_index
-from aero.regime.track import Cubic, monotone_slopes
+from aero.regime.track import Cubic
 
 
 def test_a_value_on_a_bound_belongs_to_the_more_rarefied_side() -> None:
