@@ -58,7 +58,9 @@ def figure_air(
     species = [name for name in SPECIES if has_numbers(air, f"n_{name}_m3")]
     count = len(known) + bool(species)
     if count == 0:
-        raise ValueError("nothing to draw: the table has no temperature_K, density_kg_m3 or other column of air")
+        raise ValueError(
+            "nothing to draw: the table has no temperature_K, density_kg_m3 or other column of air"
+        )
     figure = style.new_figure(size, _COLUMN_HEIGHT)
     panels = _panels(figure, count)
     altitude = column(air, "altitude_m") / 1e3
@@ -106,8 +108,8 @@ def _composition(axes: Axes, air: Table, species: list[str], altitude: Floats) -
     for k in shown:
         rows = thin(altitude, shares[k])
         axes.plot(
-            shares[k][rows], altitude[rows], color=_colour(species[k]), linewidth=1.2, linestyle=_DASHES[species[k]],
-            zorder=3, gid=f"n_{species[k]}",
+            shares[k][rows], altitude[rows], color=_colour(species[k]), linewidth=1.2,
+            linestyle=_DASHES[species[k]], zorder=3, gid=f"n_{species[k]}",
         )  # fmt: skip
         labels.avoid(shares[k][rows], altitude[rows])
     for k in shown:

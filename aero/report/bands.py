@@ -8,7 +8,7 @@ from typing import Any
 
 import numpy as np
 
-from aero.arrays import Floats
+from aero.arrays import Floats, floats
 from aero.report.names import Table, column, row_count, texts
 from aero.report.palette import HATCH, HATCH_COLOUR, HATCHED, REGIME_COLOURS, REGIMES, check_bounds
 
@@ -79,8 +79,8 @@ def _met(crossings: Table | None, bound: float, length_name: str) -> Floats:
         return np.empty(0)
     mine = np.array(texts(crossings, "length")) == length_name
     mine &= np.isclose(column(crossings, "bound"), bound, rtol=1e-9)
-    met = column(crossings, "altitude_m")[mine]
-    return met[np.isfinite(met)]
+    met: Floats = column(crossings, "altitude_m")[mine]
+    return floats(met[np.isfinite(met)])
 
 
 def _interpolated(heights: Floats, numbers: Floats, bound: float) -> float:

@@ -92,7 +92,9 @@ def figure_coefficients(
     _scale(right, _knudsen_bands(bounds, right.get_ylim()))
     _curves(left, points, name, altitude, results, "altitude_m", 1e-3, named=True)
     _curves(right, points, name, knudsen, results, f"knudsen.{length_name}", 1.0, named=False)
-    style.headline(figure, title if title is not None else f"Bridged {coefficient} coefficient between its limits")
+    style.headline(
+        figure, title if title is not None else f"Bridged {coefficient} coefficient between its limits"
+    )
     regime_key(figure, bounds, 0.25)
     style.foot(figure, footer)
     return figure
@@ -192,7 +194,9 @@ def _results(
     value, place = column(results, name), column(results, results_column) * factor
     error = None
     if has_numbers(results, f"{name}_low") and has_numbers(results, f"{name}_high"):
-        error = np.abs(np.stack([value - column(results, f"{name}_low"), column(results, f"{name}_high") - value]))
+        error = np.abs(
+            np.stack([value - column(results, f"{name}_low"), column(results, f"{name}_high") - value])
+        )
     axes.errorbar(
         value,
         place,

@@ -13,8 +13,9 @@ from aero.report import palette, style
 from aero.report.labels import SIDES, Labels
 from aero.report.names import REFERENCE, Table, column, has_numbers, length_names, shorten
 from aero.report.numbers import Scale, format_quantity, scale_for
+from aero.report.pieces import NO_TIME, Along, draw_pieces, pieces_of, run_along
 from aero.report.scales import linear_axis
-from aero.report.strips import NO_TIME, Along, altitude_scale, draw_pieces, pieces_of, regime_key, run_along
+from aero.report.strips import altitude_scale, regime_key
 from aero.report.style import NORMAL, SMALL
 from aero.report.thin import thin
 
@@ -93,7 +94,11 @@ def figure_heating(
         style.align_labels(flux, load, reach=0.38)
     _strip_panel(strip, points, segments, along, length_name, flux.get_xlim())
     altitude_scale(flux, along.places, column(points, "altitude_m"))
-    default = "Stagnation-point heating along the flight" if along.timed else f"Stagnation-point heating ({NO_TIME})"
+    default = (
+        "Stagnation-point heating along the flight"
+        if along.timed
+        else f"Stagnation-point heating ({NO_TIME})"
+    )
     style.headline(figure, title if title is not None else default)
     regime_key(figure, bounds, 0.25)
     style.foot(figure, footer)
@@ -152,18 +157,16 @@ def _flux_panel(axes: Axes, points: Table, along: Along) -> None:
     _name_flux(axes, labels, x, {k: v[rows] for k, v in {_FLUX: flux, "high": high, **series}.items()}, scale)
 
 
-def _radiative(
-    axes: Axes, labels: Labels, x: Floats, radiative: Floats, flux: Floats, scale: Scale
-) -> None:
+def _radiative(axes: Axes, labels: Labels, x: Floats, radiative: Floats, flux: Floats, scale: Scale) -> None:
     """Draw the radiative part, or say that there is next to none."""
     if not np.isfinite(radiative).any():
         return
     peak = float(np.nanmax(radiative))
     if peak < _SMALL_PART * float(np.nanmax(flux)):
-        share = "none" if peak == 0.0 else f"at most {format_quantity(peak, 'W/m²', 2)}"
-        axes.text(
-            0.995, 0.985, f"radiative part: {share}", transform=axes.transAxes, size=SMALL, color=palette.GREY,
-            ha="right", va="top",
+        share = "none" if peak == 0.0 else f"at most\n{format_quantity(peak, 'W/m²', 2)}"
+        axes.annotate(
+            f"radiative\npart: {share}", (1.0, 1.0), xytext=(4, 0), xycoords="axes fraction",
+            textcoords="offset points", size=SMALL, color=palette.GREY, va="top", annotation_clip=False,
         )  # fmt: skip
         return
     axes.plot(x, scale(radiative), color=palette.ACCENT, linewidth=1.1, zorder=2.5, gid=_RADIATIVE)
@@ -186,14 +189,18 @@ def _name_flux(axes: Axes, labels: Labels, x: Floats, series: dict[str, Floats],
             spot = int(np.nanargmin(np.abs(apart - share * np.nanmax(apart))))
             outward = ("right", "left") if spot > k else ("left", "right")
             sides = (*outward, "above", "above-right", "above-left")
-            if labels.put(float(x[spot]), float(values[spot]), text, colour=palette.GREY, size=SMALL, sides=sides):
+            if labels.put(
+                float(x[spot]), float(values[spot]), text, colour=palette.GREY, size=SMALL, sides=sides
+            ):
                 break
     high = scale(series["high"])
     for share in (0.75, 0.5, 0.3):
         late = np.flatnonzero((np.arange(x.size) > k) & (high < share * np.nanmax(high, initial=0.0)))
         spot = int(late[0]) if late.size else -1
-        sides = ("right", "above-right")
-        if spot >= 0 and labels.put(x[spot], high[spot], "95 % band", colour=palette.GREY, size=SMALL, sides=sides):
+        flank = ("right", "above-right")
+        if spot >= 0 and labels.put(
+            x[spot], high[spot], "95 % band", colour=palette.GREY, size=SMALL, sides=flank
+        ):
             return
 
 
@@ -203,7 +210,9 @@ def _name_peak(axes: Axes, labels: Labels, x: float, y: float, value: str) -> No
     for gap in (0.12, 0.3, 0.45, 0.6, 0.8, 1.0):
         for side in SIDES:
             text = f"bridged,\npeak {value}"
-            put = labels.put(x, y, text, colour=palette.INK, size=SMALL, weight="bold", gap=gap, sides=(side,))
+            put = labels.put(
+                x, y, text, colour=palette.INK, size=SMALL, weight="bold", gap=gap, sides=(side,)
+            )
             if put is None:
                 continue
             across, up = SIDES[side]
@@ -211,7 +220,7 @@ def _name_peak(axes: Axes, labels: Labels, x: float, y: float, value: str) -> No
             axes.annotate(
                 "", (x, y), xytext=(across * reach, up * reach),
                 textcoords="offset points",
-                arrowprops={"arrowstyle": "-", "color": palette.INK, "linewidth": 0.6, "shrinkA": 0, "shrinkB": 0},
+                arrowprops={"arrowstyle": "-", "color": palette.INK, "lw": 0.6, "shrinkA": 0, "shrinkB": 0},
             )  # fmt: skip
             return
 

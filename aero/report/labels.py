@@ -133,7 +133,9 @@ class Labels:
     def heights(self) -> tuple[float, float]:
         """Return bottom and top of the label written last, in data units."""
         box = self._boxes[-1]
-        low, high = self.axes.transData.inverted().transform([(0.0, edge * self._dpi) for edge in (box[1], box[3])])
+        low, high = self.axes.transData.inverted().transform(
+            [(0.0, edge * self._dpi) for edge in (box[1], box[3])]
+        )
         return float(low[1]), float(high[1])
 
     def back(self, colour: str) -> None:
@@ -142,10 +144,17 @@ class Labels:
             self._last.set_bbox({"facecolor": colour, "edgecolor": "none", "pad": 0.6})
 
     def _write(
-        self, corner: tuple[float, float], text: str, colour: str, size: float, weight: str, across: int, up: int
+        self,
+        corner: tuple[float, float],
+        text: str,
+        colour: str,
+        size: float,
+        weight: str,
+        across: int,
+        up: int,
     ) -> Text:
         figure = self.axes.get_figure(root=True)
-        assert figure is not None  # noqa: S101 - axes always stand in a figure here
+        assert figure is not None  # axes always stand in a figure here
         width, height = figure.get_size_inches()
         return figure.text(
             corner[0] / width,
@@ -154,7 +163,7 @@ class Labels:
             color=colour,
             size=size,
             weight=weight,
-            ha=_ALIGN_X[across],  # type: ignore[arg-type]
+            ha=_ALIGN_X[across],
             va=_ALIGN_Y[up],
             linespacing=1.2,
         )

@@ -2,18 +2,18 @@
 
 from __future__ import annotations
 
-from collections.abc import Mapping, Sequence
+from collections.abc import Sequence
 
 import matplotlib.patheffects as effects
 import numpy as np
 from matplotlib.axes import Axes
-from matplotlib.collections import LineCollection
 from matplotlib.figure import Figure
-from matplotlib.patches import Rectangle
+from matplotlib.patches import Patch, Rectangle
 
-from aero.arrays import ArrayLike, Floats, floats
+from aero.arrays import Floats
 from aero.report import palette, style
 from aero.report.bands import Band, Bound, altitude_bounds, bands, fill
+from aero.report.contours import Field, draw_contours
 from aero.report.labels import SIDES, Labels, spread
 from aero.report.names import (
     REFERENCE,
@@ -30,13 +30,8 @@ from aero.report.scales import linear_axis, round_step, span, time_unit
 from aero.report.style import NORMAL, SMALL
 from aero.report.thin import thin
 
-Field = Mapping[str, ArrayLike]
 _LEFT, _BOTTOM, _RIGHT, _TOP = 0.55, 0.62, 1.0, 0.36  # margins [in]
 _COLUMN_HEIGHT = 4.4  # in
-_LINE_KINDS = {  # column -> (dash pattern, symbol in the label, unit)
-    "dynamic_pressure_Pa": ((0, (5, 3)), "q", "Pa"),
-    "heat_flux_W_m2": ((0, (1.2, 2)), "", "W/m²"),
-}
 
 
 @style.styled
@@ -95,7 +90,7 @@ def figure_map(
     marks.ends(altitude, speed)
     _name_bands(axes, labels, regimes)
     marks.time(points, altitude, speed)
-    _contours(axes, labels, regimes, patches, points, field)
+    draw_contours(axes, labels, regimes, patches, points, field)
     if ax is None:
         style.headline(figure, title if title is not None else _title(points, length_name))
         style.foot(figure, footer)
@@ -131,7 +126,7 @@ def _frame(axes: Axes, altitude: Floats, speed: Floats) -> None:
     style.quiet_axes(axes)
 
 
-def _band(axes: Axes, band: Band) -> Rectangle:
+def _band(axes: Axes, band: Band) -> Patch:
     left, right = axes.get_xlim()
     box = (left, band.bottom / 1e3), right - left, (band.top - band.bottom) / 1e3
     patch = Rectangle(*box, zorder=0.5, gid=f"band-{band.regime}", **fill(band.regime))
@@ -163,7 +158,13 @@ def _name_bounds(figure: Figure, axes: Axes, edges: Sequence[Bound]) -> None:
             va="center",
             linespacing=1.15,
             annotation_clip=False,
-            arrowprops={"arrowstyle": "-", "color": palette.GREY, "linewidth": 0.6, "shrinkA": 1, "shrinkB": 0},
+            arrowprops={
+                "arrowstyle": "-",
+                "color": palette.GREY,
+                "linewidth": 0.6,
+                "shrinkA": 1,
+                "shrinkB": 0,
+            },
         )
 
 
@@ -210,7 +211,9 @@ class _Marks:
                 return palette.REGIME_TEXT[band.regime]
         return palette.INK
 
-    def put(self, x: float, y: float, text: str, size: float, sides: Sequence[str], gap: float = 0.06) -> bool:
+    def put(
+        self, x: float, y: float, text: str, size: float, sides: Sequence[str], gap: float = 0.06
+    ) -> bool:
         """Write a label on the first free side, in the colour of the band it comes to lie on."""
         for side in sides:
             lean = SIDES[side][1] * 0.11 / _inches_per_km(self.axes)
@@ -227,18 +230,37 @@ class _Marks:
         heights = column(crossings, "altitude_m")[mine] / 1e3
         speeds = column(crossings, "air_speed_m_s")[mine] / 1e3
         self.axes.plot(
-            speeds, heights, "o", ms=4.6, mfc="none", mec="#14100c", mew=1.0, ls="none", zorder=6, gid="crossings"
+            speeds,
+            heights,
+            "o",
+            ms=4.6,
+            mfc="none",
+            mec="#14100c",
+            mew=1.0,
+            ls="none",
+            zorder=6,
+            gid="crossings",
         )
-        self.axes.plot(speeds, heights, "o", ms=6.4, mfc="none", mec="#fdfdfb", mew=0.9, ls="none", zorder=5.9)
+        self.axes.plot(
+            speeds, heights, "o", ms=6.4, mfc="none", mec="#fdfdfb", mew=0.9, ls="none", zorder=5.9
+        )
         for x, y in zip(speeds, heights, strict=True):
-            self.put(x, y, f"{format_number(y)} km", SMALL, ("above-right", "above-left", "below-right", "below-left"))
+            self.put(
+                x,
+                y,
+                f"{format_number(y)} km",
+                SMALL,
+                ("above-right", "above-left", "below-right", "below-left"),
+            )
 
     def ends(self, altitude: Floats, speed: Floats) -> None:
         """Mark the first point, so that the direction of flight can be told."""
         good = np.flatnonzero(np.isfinite(altitude) & np.isfinite(speed))
         if good.size:
             x, y = speed[good[0]] / 1e3, altitude[good[0]] / 1e3
-            self.axes.plot([x], [y], "s", ms=4.2, color="#14100c", mec="#fdfdfb", mew=0.8, zorder=6, gid="start")
+            self.axes.plot(
+                [x], [y], "s", ms=4.2, color="#14100c", mec="#fdfdfb", mew=0.8, zorder=6, gid="start"
+            )
             self.put(x, y, "start", SMALL, tuple(SIDES), gap=0.08)
 
     def time(self, points: Table, altitude: Floats, speed: Floats) -> None:
@@ -257,7 +279,16 @@ class _Marks:
         y = np.interp(ticks * seconds, time, altitude) / 1e3
         keep = _apart(self.labels.inches(x, y), 0.12)
         self.axes.plot(
-            x[keep], y[keep], "o", ms=2.6, color="#fdfdfb", mec="#14100c", mew=0.6, ls="none", zorder=5, gid="time-ticks"
+            x[keep],
+            y[keep],
+            "o",
+            ms=2.6,
+            color="#fdfdfb",
+            mec="#14100c",
+            mew=0.6,
+            ls="none",
+            zorder=5,
+            gid="time-ticks",
         )
         for k in np.flatnonzero(keep):
             text = f"{format_number(ticks[k], trim=True)} {unit}"
@@ -273,123 +304,3 @@ def _apart(places: Floats, gap: float) -> np.ndarray:
         if not np.hypot(*(place - last)) < gap:
             keep[k], last = True, place
     return keep
-
-
-def _contours(
-    axes: Axes,
-    labels: Labels,
-    regimes: Sequence[Band],
-    patches: Sequence[Rectangle],
-    points: Table,
-    field: Field | None,
-) -> None:
-    """Draw contours, quiet on each band, and label each on the spot farthest from everything else."""
-    for name, (dashes, symbol, unit) in _LINE_KINDS.items():
-        for level, lines in _levels(axes, name, points, field).items():
-            bare = [(None, palette.GREY)]
-            colours = [(p, palette.REGIME_HAIR[b.regime]) for p, b in zip(patches, regimes, strict=True)]
-            for patch, colour in colours or bare:
-                drawn = LineCollection(lines, colors=colour, linewidths=0.7, linestyles=[dashes], zorder=2)
-                drawn.set_gid(f"{name}-{level:g}")
-                axes.add_collection(drawn, autolim=False)
-                if patch is not None:
-                    drawn.set_clip_path(patch)
-            text = f"{symbol} {format_quantity(level, unit)}".strip()
-            _label_contour(axes, labels, regimes, lines, text)
-
-
-def _levels(axes: Axes, name: str, points: Table, field: Field | None) -> dict[float, list[Floats]]:
-    """Return decade levels of a quantity and their lines in km/s and km."""
-    if field is not None and name in field:
-        height, speed = floats(field["altitude_m"]) / 1e3, floats(field["air_speed_m_s"]) / 1e3
-        values = floats(field[name])
-    elif name == "dynamic_pressure_Pa" and has_numbers(points, "density_kg_m3"):
-        height, speed, values = _dynamic_pressure(axes, points)
-    else:
-        return {}
-    if values.shape != (height.size, speed.size):
-        raise ValueError(f"field {name!r} has shape {values.shape}, expected {(height.size, speed.size)}")
-    if min(values.shape) < 2:
-        return {}
-    return _trace(height, speed, values, float(np.nanmax(column(points, name), initial=0.0)))
-
-
-def _dynamic_pressure(axes: Axes, points: Table) -> tuple[Floats, Floats, Floats]:
-    """Return rho V^2/2 over the altitudes flown, the density interpolated in its logarithm."""
-    altitude, density = column(points, "altitude_m"), column(points, "density_kg_m3")
-    good = np.isfinite(altitude) & (density > 0.0)
-    heights, rows = np.unique(altitude[good], return_index=True)
-    if heights.size < 2:
-        return np.empty(0), np.empty(0), np.empty((0, 0))
-    grid = np.linspace(heights[0], heights[-1], 160)
-    air = np.exp(np.interp(grid, heights, np.log(density[good][rows])))
-    speed = np.linspace(max(axes.get_xlim()[0], 0.0), axes.get_xlim()[1], 160)
-    return grid / 1e3, speed, 0.5 * air[:, None] * (1e3 * speed) ** 2
-
-
-def _trace(height: Floats, speed: Floats, values: Floats, largest: float) -> dict[float, list[Floats]]:
-    import contourpy
-
-    with np.errstate(divide="ignore", invalid="ignore"):
-        powers = np.log10(values)
-    powers[~np.isfinite(powers)] = np.nan
-    if not np.isfinite(powers).any():
-        return {}
-    if not largest > 0.0:
-        largest = float(np.nanmax(values))
-    last = int(np.floor(np.log10(largest))) + 1
-    tracer = contourpy.contour_generator(speed, height, np.ma.masked_invalid(powers))
-    found = {}
-    for power in range(last, last - 4, -1):  # from the first decade above what the flight meets, downwards
-        lines = [floats(line) for line in tracer.lines(power)]
-        if lines:
-            found[10.0**power] = lines
-    return found
-
-
-def _label_contour(
-    axes: Axes, labels: Labels, regimes: Sequence[Band], lines: Sequence[Floats], text: str
-) -> None:
-    """Write the level on its line, along it, where the label fits its band and stands clear of the rest."""
-    line = max(lines, key=len)
-    places = labels.inches(line[:, 0], line[:, 1])
-    edges = [axes.get_ylim()[0], *(band.top / 1e3 for band in regimes), axes.get_ylim()[1]]
-    walls = labels.inches([line[0, 0]] * len(edges), edges)[:, 1]
-    half = 0.5 * style.text_width(text, SMALL - 0.5) + 0.03
-    best, best_gap, best_angle = -1, 0.17, 0.0
-    for k in range(2, len(line) - 2):
-        rise = places[k + 2] - places[k - 2]
-        angle = float(np.arctan2(rise[1], rise[0]))
-        across, up = abs(half * np.cos(angle)) + 0.04, abs(half * np.sin(angle)) + 0.06
-        if np.abs(walls - places[k, 1]).min() < up or not labels.inside(places[k], across):
-            continue
-        gap = min(labels.distance(places[k]), 0.8)
-        if gap > best_gap:
-            best, best_gap, best_angle = k, gap, angle
-    if best < 0:
-        return
-    _write_on_line(axes, regimes, line[best], text, float(np.degrees(best_angle)))
-    across, up = abs(half * np.cos(best_angle)) + 0.05, abs(half * np.sin(best_angle)) + 0.05
-    x, y = places[best]
-    labels.avoid_box((x - across, y - up, x + across, y + up))
-
-
-def _write_on_line(axes: Axes, regimes: Sequence[Band], place: Floats, text: str, angle: float) -> None:
-    band = next((b for b in regimes if b.bottom <= place[1] * 1e3 <= b.top), None)
-    axes.text(
-        place[0],
-        place[1],
-        text,
-        size=SMALL - 0.5,
-        color=palette.REGIME_TEXT[band.regime] if band else palette.GREY,
-        rotation=(angle + 90.0) % 180.0 - 90.0,
-        rotation_mode="anchor",
-        ha="center",
-        va="center",
-        zorder=3,
-        bbox={
-            "facecolor": palette.REGIME_COLOURS[band.regime] if band else palette.PAPER,
-            "edgecolor": "none",
-            "pad": 0.8,
-        },
-    )

@@ -20,14 +20,14 @@ REFERENCE = "reference"
 
 
 def visible(text: object) -> str:
-    """Return text on one line in which every character is legal in HTML and SVG and can be seen.
+    r"""Return text on one line in which every character is legal in HTML and SVG and can be seen.
 
     Control characters become their picture (U+2400 and on); direction overrides, lone surrogates and
     characters that XML forbids become the replacement character. Nothing is dropped in silence.
 
     Examples
     --------
-    >>> visible("two\\nlines"), visible("a<b>_$%")
+    >>> visible("two\nlines"), visible("a<b>_$%")
     ('two␊lines', 'a<b>_$%')
     """
     return "".join(_visible_character(c) for c in str(text))
@@ -70,8 +70,8 @@ def column(table: Table, name: str) -> Floats:
 
 def row_count(table: Table) -> int:
     """Return the number of rows."""
-    for name in table:
-        return len(np.asarray(table[name]))
+    for values in dict(table).values():
+        return len(np.asarray(values))
     return 0
 
 
@@ -91,7 +91,7 @@ def has_numbers(table: Table, name: str) -> bool:
     return name in table and bool(np.isfinite(column(table, name)).any())
 
 
-def length_names(columns: Iterable[str]) -> list[str]:
+def length_names(columns: Iterable[object]) -> list[str]:
     """Return the lengths that a points table knows, in the order of its columns.
 
     Examples

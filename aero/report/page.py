@@ -21,7 +21,7 @@ ROWS = 200  # rows of a table on the page; the files hold all
 
 @dataclass(frozen=True, eq=False)
 class Picture:
-    """A figure: its SVG (from `style.svg`), what it shows in a sentence, and the same for those who cannot see it."""
+    """A figure: its SVG (from `style.svg`), a caption, and a description for those who cannot see it."""
 
     svg: str
     caption: str
@@ -127,7 +127,12 @@ def render(page: Page) -> str:
         anchor={title: anchors[len(sections) + k] for k, title in enumerate(titles[len(sections) :])},
         provenance=_flat(page.provenance),
         regimes=[
-            {"name": r, "colour": palette.REGIME_COLOURS[r], "text": palette.REGIME_TEXT[r], "hatched": r == palette.HATCHED}
+            {
+                "name": r,
+                "colour": palette.REGIME_COLOURS[r],
+                "text": palette.REGIME_TEXT[r],
+                "hatched": r == palette.HATCHED,
+            }
             for r in palette.REGIMES
         ],
         hatch=palette.HATCH_COLOUR,
@@ -234,7 +239,8 @@ def _picture(picture: Picture, prefix: str) -> dict[str, Any]:
     from markupsafe import Markup
 
     return {
-        "svg": Markup(inline_svg(picture.svg, prefix)),  # noqa: S704 - drawn by this package, text escaped there
+        # Not escaped again: drawn by this package, its texts were escaped when it was written.
+        "svg": Markup(inline_svg(picture.svg, prefix)),
         "caption": visible(picture.caption),
         "alt": visible(picture.alt or picture.caption),
     }

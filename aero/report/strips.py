@@ -3,53 +3,29 @@
 from __future__ import annotations
 
 from collections.abc import Mapping, Sequence
-from dataclasses import dataclass
 
 import numpy as np
 from matplotlib.axes import Axes
 from matplotlib.figure import Figure
 from matplotlib.patches import Rectangle
 
-from aero.arrays import Floats
+from aero.arrays import Floats, floats
 from aero.report import palette, style
 from aero.report.bands import fill
 from aero.report.names import (
     Table,
     column,
-    has_numbers,
     length_names,
     length_sizes,
-    row_count,
     shorten,
-    texts,
 )
 from aero.report.numbers import format_number, format_quantity
-from aero.report.scales import linear_axis, round_ticks, time_unit
+from aero.report.pieces import NO_TIME, Along, draw_pieces, pieces_of, run_along
+from aero.report.scales import linear_axis, round_ticks
 from aero.report.style import NORMAL, SMALL, text_width
 
 _ROW, _GAP = 0.27, 0.09  # a strip and the space under it [in]
-_TOP, _BOTTOM, _RIGHT = 0.82, 0.92, 0.22  # margins [in]
-NO_TIME = "no time in the trajectory: points drawn one by one"
-
-
-@dataclass(frozen=True)
-class Piece:
-    """A stretch of one regime along the axis of a strip; the share is NaN where there is none."""
-
-    regime: str
-    start: float
-    end: float
-    share: float
-
-
-@dataclass(frozen=True)
-class Along:
-    """What a strip runs along: the place of every point on it, its label and its unit."""
-
-    places: Floats
-    label: str
-    timed: bool
-    factor: float
+_TOP, _BOTTOM, _RIGHT = 0.7, 0.92, 0.22  # margins [in]
 
 
 @style.styled
@@ -137,49 +113,6 @@ def _canvas(size: str, ax: Axes | None, captions: Sequence[str]) -> tuple[Figure
     return figure, style.place_axes(figure, left, bottom, width - _RIGHT, height - _TOP)
 
 
-def run_along(points: Table) -> Along:
-    """Return what strips run along: time in the unit people would use, else the number of the point."""
-    if has_numbers(points, "time_s"):
-        time = column(points, "time_s")
-        unit, seconds = time_unit(float(np.nanmax(time) - np.nanmin(time)))
-        return Along(time / seconds, f"time [{unit}]", True, 1.0 / seconds)
-    count = row_count(points)
-    return Along(np.arange(1.0, count + 1.0), "number of the point [-]", False, 1.0)
-
-
-def pieces_of(points: Table, segments: Table | None, name: str, along: Along) -> list[Piece]:
-    """Return the pieces of one strip: segments where there are times, else runs of equal tags."""
-    if along.timed and segments is not None and row_count(segments):
-        mine = np.flatnonzero(np.array(texts(segments, "length")) == name)
-        regimes, shares = texts(segments, "regime"), column(segments, "heat_load_share")
-        start, end = column(segments, "start_s") * along.factor, column(segments, "end_s") * along.factor
-        return [
-            Piece(regimes[k], float(start[k]), float(end[k]), float(shares[k]))
-            for k in mine
-            if regimes[k] in palette.REGIME_COLOURS
-        ]
-    if f"regime.{name}" not in points:
-        return []
-    return _runs(np.asarray(points[f"regime.{name}"], dtype=object), along)
-
-
-def _runs(tags: np.ndarray, along: Along) -> list[Piece]:
-    """Cut half-way between points whose tags differ; a point without a tag leaves a hole."""
-    if tags.size == 0:
-        return []
-    starts = np.concatenate([[0], np.flatnonzero(tags[1:] != tags[:-1]) + 1])
-    ends = np.concatenate([starts[1:], [tags.size]])
-    half = 0.0 if along.timed else 0.5
-    edges = np.concatenate(
-        [[along.places[0] - half], 0.5 * (along.places[1:] + along.places[:-1]), [along.places[-1] + half]]
-    )
-    return [
-        Piece(str(tags[a]), float(edges[a]), float(edges[b]), float("nan"))
-        for a, b in zip(starts, ends, strict=True)
-        if tags[a] in palette.REGIME_COLOURS
-    ]
-
-
 def _axis(axes: Axes, along: Along, rows: int) -> None:
     good = along.places[np.isfinite(along.places)]
     low, high = (float(good.min()), float(good.max())) if good.size else (0.0, 1.0)
@@ -192,53 +125,6 @@ def _axis(axes: Axes, along: Along, rows: int) -> None:
     axes.tick_params(axis="y", length=0)
 
 
-def draw_pieces(axes: Axes, pieces: Sequence[Piece], row: float, half: float) -> None:
-    """Draw one strip centred on `row`, and in each piece wide enough its regime and share."""
-    left, right = axes.get_xlim()
-    figure = axes.get_figure(root=True)
-    per_unit = float(axes.bbox.width / figure.dpi / (right - left))  # type: ignore[union-attr]
-    for piece in pieces:
-        patch = Rectangle(
-            (piece.start, row - half), piece.end - piece.start, 2 * half, gid=f"piece-{piece.regime}", **fill(piece.regime)
-        )
-        axes.add_patch(patch)
-        text = piece_text(piece, (min(piece.end, right) - max(piece.start, left)) * per_unit - 0.06)
-        if text:
-            axes.text(
-                0.5 * (piece.start + piece.end),
-                row,
-                text,
-                color=palette.REGIME_TEXT[piece.regime],
-                size=SMALL,
-                ha="center",
-                va="center_baseline",
-                gid="share",
-            )
-
-
-def piece_text(piece: Piece, width: float) -> str:
-    """Return the longest of regime with share, share, regime that fits `width` inches; or nothing."""
-    share = f"{percent(piece.share)} %" if np.isfinite(piece.share) else ""
-    for text in (f"{piece.regime} {share}".strip(), share or piece.regime):
-        if text and text_width(text, SMALL) <= width:
-            return text
-    return ""
-
-
-def percent(share: float) -> str:
-    """Return a share in per cent, whole from 10 up, with one decimal below, never 0 for a little.
-
-    Examples
-    --------
-    >>> percent(0.923), percent(0.0312), percent(0.0002), percent(0.0)
-    ('92', '3.1', '<0.1', '0')
-    """
-    value = 100.0 * share
-    if 0.0 < value < 0.05:
-        return "<0.1"
-    return f"{value:.0f}" if value >= 9.95 or value == 0.0 else f"{value:.1f}"
-
-
 def altitude_scale(axes: Axes, places: Floats, altitude: Floats) -> None:
     """Write altitudes along the top, where the flight passes round values; crowded ones are left out.
 
@@ -249,8 +135,9 @@ def altitude_scale(axes: Axes, places: Floats, altitude: Floats) -> None:
     if x.size == 0:
         return
     low, high = float(height.min()), float(height.max())
+    x, height = _smooth(x), _smooth(height)
     marks = {float(x[0]): float(height[0]), float(x[-1]): float(height[-1])}
-    passes = {}
+    passes: dict[float, float] = {}
     for level in reversed(round_ticks(low, high, 8)):
         above = height >= level
         for k in np.flatnonzero(above[1:] != above[:-1]):
@@ -261,6 +148,16 @@ def altitude_scale(axes: Axes, places: Floats, altitude: Floats) -> None:
                 _write_altitudes(axes, marks, label)
                 return
     _write_altitudes(axes, marks | {at: level for at, level in passes.items() if at not in marks})
+
+
+def _smooth(values: Floats, most: int = 1000) -> Floats:
+    """Return means over stretches of a long series, its ends kept: noise is no passing of a level."""
+    if values.size <= most:
+        return values
+    groups = np.linspace(0, values.size, most + 1).astype(np.intp)
+    means = np.add.reduceat(values, groups[:-1]) / np.diff(groups)
+    means[[0, -1]] = values[[0, -1]]
+    return floats(means)
 
 
 def _write_altitudes(axes: Axes, marks: Mapping[float, float], label: str = "altitude [km]") -> None:
@@ -279,7 +176,9 @@ def _write_altitudes(axes: Axes, marks: Mapping[float, float], label: str = "alt
             kept.append(at)
     kept.sort()
     top = axes.secondary_xaxis("top")
-    top.set_xticks(kept, [format_number(marks[at], 3, trim=True) for at in kept], size=SMALL, color=palette.GREY)
+    top.set_xticks(
+        kept, [format_number(marks[at], 3, trim=True) for at in kept], size=SMALL, color=palette.GREY
+    )
     top.set_xlabel(label, size=SMALL, color=palette.GREY, labelpad=2.5)
     top.spines["top"].set_visible(False)
     top.tick_params(length=2.0, pad=1.5)
@@ -290,7 +189,10 @@ def regime_key(figure: Figure, bounds: Sequence[float], bottom: float) -> None:
     width, height = (float(edge) for edge in figure.get_size_inches())
     phrases = palette.bound_phrases(bounds)
     entries = [(regime, regime, phrases[regime]) for regime in palette.REGIMES]
-    widths = [text_width(name, SMALL, "bold") + text_width("  " + phrase, SMALL) + 0.38 for _, name, phrase in entries]
+    widths = [
+        text_width(name, SMALL, "bold") + text_width("  " + phrase, SMALL) + 0.38
+        for _, name, phrase in entries
+    ]
     step = min(1.0, (width - 0.2) / sum(widths))
     left = 0.1
     for (regime, name, phrase), wide in zip(entries, widths, strict=True):
@@ -304,9 +206,11 @@ def regime_key(figure: Figure, bounds: Sequence[float], bottom: float) -> None:
                 **fill(regime),
             )
         )
-        figure.text((left + 0.2) / width, (bottom + 0.045) / height, name, size=SMALL, weight="bold", va="center")
+        figure.text(
+            (left + 0.2) / width, (bottom + 0.045) / height, name, size=SMALL, weight="bold", va="center"
+        )
         after = left + 0.2 + text_width(name + "  ", SMALL, "bold")
-        figure.text(after / width, (bottom + 0.045) / height, phrase, size=SMALL, color=palette.GREY, va="center")
+        figure.text(
+            after / width, (bottom + 0.045) / height, phrase, size=SMALL, color=palette.GREY, va="center"
+        )
         left += wide * step
-
-

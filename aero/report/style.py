@@ -67,7 +67,17 @@ _RC = {
     "path.simplify": True,
 }
 # Settings of a program around the figure, not of the figure.
-_FOREIGN = ("backend", "interactive", "toolbar", "webagg", "tk.", "docstring", "timezone", "keymap", "animation")
+_FOREIGN = (
+    "backend",
+    "interactive",
+    "toolbar",
+    "webagg",
+    "tk.",
+    "docstring",
+    "timezone",
+    "keymap",
+    "animation",
+)
 
 P = ParamSpec("P")
 R = TypeVar("R")
@@ -81,7 +91,7 @@ def look() -> Iterator[None]:
         with warnings.catch_warnings():  # old settings warn when they are touched, even unchanged
             warnings.simplefilter("ignore")
             mpl.rcParams.update(defaults)
-        mpl.rcParams.update(_RC)
+        mpl.rcParams.update(_RC)  # type: ignore[arg-type]
         yield
 
 
@@ -111,7 +121,9 @@ def new_figure(size: str, column_height: float) -> Figure:
     return Figure(figsize=(WIDTHS[size], SLIDE_HEIGHT if size == "slide" else column_height))
 
 
-def place_axes(figure: Figure, left: float, bottom: float, right: float, top: float, **options: object) -> Axes:
+def place_axes(
+    figure: Figure, left: float, bottom: float, right: float, top: float, **options: object
+) -> Axes:
     """Return new axes given their four edges in inches from the left and bottom of the figure."""
     width, height = figure.get_size_inches()
     box = (left / width, bottom / height, max(right - left, 0.1) / width, max(top - bottom, 0.1) / height)

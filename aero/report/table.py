@@ -80,7 +80,10 @@ def _lines(one: ReadyColumn) -> list[str]:
 
 def _header(one: ReadyColumn) -> list[str]:
     """Return a header in short lines, its unit in the last."""
-    return [*textwrap.wrap(one.header, _HEADER, break_on_hyphens=False), *([f"[{one.unit}]"] if one.unit else [])]
+    return [
+        *textwrap.wrap(one.header, _HEADER, break_on_hyphens=False),
+        *([f"[{one.unit}]"] if one.unit else []),
+    ]
 
 
 def _cells(one: ReadyColumn) -> list[str]:
@@ -162,7 +165,9 @@ def table_text(
         emoji=False,
         legacy_windows=False,
     )
-    for number, made in enumerate(terminal_tables(table, columns=columns, keys=keys, title=title, width=width)):
+    for number, made in enumerate(
+        terminal_tables(table, columns=columns, keys=keys, title=title, width=width)
+    ):
         if number:
             console.print()
         console.print(made, crop=False, overflow="ignore")

@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Sequence
+from itertools import pairwise
 
 import numpy as np
 from numpy.typing import NDArray
@@ -65,8 +66,8 @@ def _least(values: NDArray[np.float64], width: int) -> NDArray[np.intp]:
     stretches = -(-values.size // width)
     filled = np.full(stretches * width, np.inf)
     filled[: values.size] = np.where(np.isnan(values), np.inf, values)
-    place = filled.reshape(stretches, width).argmin(axis=1)
-    return place + np.arange(stretches) * width
+    place: NDArray[np.intp] = filled.reshape(stretches, width).argmin(axis=1)
+    return place + np.arange(stretches, dtype=np.intp) * width
 
 
 def monotone_runs(values: Sequence[float] | NDArray[np.float64]) -> list[slice]:
@@ -83,4 +84,4 @@ def monotone_runs(values: Sequence[float] | NDArray[np.float64]) -> list[slice]:
         return [slice(0, len(step) + 1)] if len(values) else []
     turns = moving[1:][step[moving][1:] != step[moving][:-1]]
     edges = [0, *turns.tolist(), len(step)]
-    return [slice(a, b + 1) for a, b in zip(edges[:-1], edges[1:], strict=True)]
+    return [slice(a, b + 1) for a, b in pairwise(edges)]

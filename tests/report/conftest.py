@@ -3,6 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
+from itertools import pairwise
 from types import SimpleNamespace
 
 import numpy as np
@@ -13,7 +14,9 @@ BOUNDS = (0.01, 0.1, 10.0)
 REGIMES = np.array(["continuum", "slip", "transitional", "free-molecular"], dtype=object)
 LENGTHS = {"reference": 0.9, "nose": 0.27, "seal_gap": 1.5e-3}
 # U.S. Standard Atmosphere 1976, table I, density by geometric altitude, from memory: only to look plausible.
-HEIGHT = np.array([0, 10, 20, 30, 40, 50, 60, 70, 80, 90, 100, 110, 120, 130, 150, 200, 300, 400, 500.0]) * 1e3
+HEIGHT = (
+    np.array([0, 10, 20, 30, 40, 50, 60, 70, 80, 90, 100, 110, 120, 130, 150, 200, 300, 400, 500.0]) * 1e3
+)
 DENSITY = np.array(
     [1.225, 0.4135, 0.08891, 0.01841, 3.996e-3, 1.027e-3, 3.097e-4, 8.283e-5, 1.846e-5, 3.416e-6, 5.604e-7,
      9.708e-8, 2.222e-8, 8.152e-9, 2.076e-9, 2.541e-10, 1.916e-11, 2.803e-12, 5.215e-13]
@@ -28,7 +31,11 @@ def density_at(altitude: np.ndarray) -> np.ndarray:
 
 
 def entry(
-    altitude: float = 130e3, speed: float = 7600.0, angle_deg: float = -2.5, until: float = 20e3, step: float = 0.5
+    altitude: float = 130e3,
+    speed: float = 7600.0,
+    angle_deg: float = -2.5,
+    until: float = 20e3,
+    step: float = 0.5,
 ) -> tuple[np.ndarray, np.ndarray, np.ndarray, np.ndarray]:
     """Fly a point mass of 40 kg/m2 over a round Earth without rotation."""
     state = np.array([altitude, speed, np.radians(angle_deg)])
@@ -77,7 +84,8 @@ def points_from(
     free, continuum = 0.5 * rho * speed**3, 1.7415e-4 * np.sqrt(rho / 0.27) * speed**3
     flux = free * continuum / np.sqrt(free**2 + continuum**2 + 1e-30)
     columns |= {
-        "drag_coefficient": drag, "drag_coefficient_free_molecular": outer, "drag_coefficient_continuum": inner,
+        "drag_coefficient": drag, "drag_coefficient_free_molecular": outer,
+        "drag_coefficient_continuum": inner,
         "drag_bridge": share, "drag_coefficient_low": drag * (1 - spread),
         "drag_coefficient_high": drag * (1 + spread),
         "heat_flux_W_m2": flux, "heat_flux_free_molecular_W_m2": free, "heat_flux_continuum_W_m2": continuum,
@@ -111,7 +119,7 @@ def cut(points: pd.DataFrame, names: list[str]) -> tuple[pd.DataFrame, pd.DataFr
                      "altitude_low_m": z - 900.0, "altitude_high_m": z + 1100.0}
                 )  # fmt: skip
         edges = [time[0], *sorted(cuts), time[-1]]
-        for a, b in zip(edges[:-1], edges[1:], strict=True):
+        for a, b in pairwise(edges):
             numbers = np.exp(np.interp([a, 0.5 * (a + b), b], time, np.log(knudsen)))
             part = float(np.interp(b, time, load) - np.interp(a, time, load))
             lost = float(np.interp(a, time, speed) - np.interp(b, time, speed))
