@@ -42,7 +42,7 @@ class Bridge:
     ----------
     function : str
         Key of `BRIDGES`.
-    variable : str
+    similarity : str
         Key of `SIMILARITY`: the number it takes, on the length across the flow. `knudsen` is the hard-sphere
         one whatever is displayed, for the centre belongs to that definition.
     centre : float
@@ -62,7 +62,7 @@ class Bridge:
     """
 
     function: str
-    variable: str
+    similarity: str
     centre: float
     width: float
     centre_sigma: float
@@ -76,17 +76,17 @@ class Bridge:
 
         The derivatives are with respect to the number that grows as the air thins (1/Re0 for Re0).
         """
-        turn = SIMILARITY[self.variable]
+        turn = SIMILARITY[self.similarity]
         centre = float(turn(floats(self.centre)))
         return BRIDGES[self.function](turn(floats(number)), centre, self.width)
 
     def over_centre(self, number: ArrayLike) -> Floats:
         """Return the similarity number over its centre, growing as the air thins."""
-        turn = SIMILARITY[self.variable]
+        turn = SIMILARITY[self.similarity]
         return turn(floats(number)) / turn(floats(self.centre))
 
     def __str__(self) -> str:
-        return f"{self.function} in {self.variable}, centre {self.centre:g}, width {self.width:g}"
+        return f"{self.function} in {self.similarity}, centre {self.centre:g}, width {self.width:g}"
 
 
 @dataclass(frozen=True)
@@ -165,7 +165,8 @@ def bridge_for(vehicle: Vehicle, coefficient: str) -> Bridge | HeatBridge:
     Parameters
     ----------
     vehicle : Vehicle
-        Its body class picks the row; its `[bridging.COEFFICIENT]` table, if any, replaces values.
+        Its body class picks the row; its `[bridging.COEFFICIENT]` table, if any, replaces values
+        (`variable` there is the similarity number).
     coefficient : {"drag", "lift", "heating"}
 
     Returns
@@ -200,7 +201,7 @@ def bridge_for(vehicle: Vehicle, coefficient: str) -> Bridge | HeatBridge:
 
 
 def _checked(given: Mapping[str, Any], row: Bridge | HeatBridge, source: str) -> dict[str, Any]:
-    known = [field.name for field in fields(row) if field.name != "source"]
+    known = ["variable" if f.name == "similarity" else f.name for f in fields(row) if f.name != "source"]
     for key, value in given.items():
         if key not in known:
             remedy = nearest(key, known) or f"use one of: {', '.join(known)}"
@@ -213,15 +214,16 @@ def _checked(given: Mapping[str, Any], row: Bridge | HeatBridge, source: str) ->
             raise InputError(f"{key} is {value!r}, expected a number", source=source)
         elif value < 0.0 or (value == 0.0 and key in ("centre", "width", "exponent")):
             raise InputError(f"{key} is {value}, expected a positive number", source=source)
-    return {key: value if isinstance(value, str) else float(value) for key, value in given.items()}
+    named = {"similarity" if key == "variable" else key: value for key, value in given.items()}
+    return {key: value if isinstance(value, str) else float(value) for key, value in named.items()}
 
 
 def _completed(changes: dict[str, Any], row: Bridge, source: str) -> dict[str, Any]:
     """Add what follows from a change: published parameters of a function, the width's own uncertainty."""
-    variable = changes.get("variable", row.variable)
-    if variable != row.variable and "centre" not in changes:
+    variable = changes.get("similarity", row.similarity)
+    if variable != row.similarity and "centre" not in changes:
         raise InputError(
-            f"variable is '{variable}' without a centre; {row.centre:g} is one in '{row.variable}'",
+            f"variable is '{variable}' without a centre; {row.centre:g} is one in '{row.similarity}'",
             source=source,
             remedy="add centre, the value of that number at which the bridge is half-way",
         )

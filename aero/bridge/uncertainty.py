@@ -90,6 +90,11 @@ def drag_band(
     Band
         NaN where the drag is; never through zero.
 
+    Raises
+    ------
+    ValueError
+        If the free-molecular limit comes without its derivatives.
+
     Notes
     -----
     ln C is taken as normal, which for a few percent is the same as C normal, keeps the bounds positive, and
@@ -100,6 +105,9 @@ def drag_band(
     and the symmetric one add in quadrature on their side.
     """
     c, cc, cf = floats(drag), floats(continuum), free_molecular.drag
+    by_accommodation, by_wall = free_molecular.drag_by_accommodation, free_molecular.drag_by_wall_temperature
+    if by_accommodation is None or by_wall is None:
+        raise ValueError("free_molecular must carry the derivatives of its drag")
     share = bridge(number) if fraction is None else fraction
     inverse = 1.0 / np.where(c == 0.0, np.nan, c)
     tilt = (cf - cc) * inverse
@@ -111,12 +119,12 @@ def drag_band(
         "density bias": through_number * floats(bias),
         "density scatter": through_number * floats(scatter),
         "cross-sections": through_number * floats(cross_section),
-        "accommodation": thin * free_molecular.drag_by_accommodation * floats(accommodation),
+        "accommodation": thin * by_accommodation * floats(accommodation),
         "gas-surface form": thin * cf * GAS_SURFACE_SIGMA,
         "bridge centre": tilt * share.by_centre * bridge.centre_sigma,
         "bridge width": tilt * share.by_width * bridge.width_sigma,
         "continuum level": level * bridge.continuum_sigma,
-        "wall": thin * free_molecular.drag_by_wall_temperature * (WALL_SIGMA * floats(wall_temperature)),
+        "wall": thin * by_wall * (WALL_SIGMA * floats(wall_temperature)),
     }
     behind = APPROACH * share.value / np.sqrt(1.0 + 0.1 * bridge.over_centre(number))
     above = {"continuum above Newtonian": level * bridge.continuum_above} if bridge.continuum_above else {}
@@ -167,7 +175,7 @@ def heat_band(
     radiative = heating.radiative * inverse
     thick = heating.continuum_weight * convective
     thin = convective - thick
-    exponent = CONVECTIVE[heating.convective].density_exponent
+    exponent = CONVECTIVE[heating.correlation].density_exponent
     by_density = exponent * thick + thin
     if heating.radiative.any():
         by_density = by_density + _RADIATIVE_DENSITY_EXPONENT * radiative

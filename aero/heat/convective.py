@@ -180,7 +180,7 @@ def convective_flux(
     nose_radius: ArrayLike,
     total_enthalpy: ArrayLike,
     wall_temperature: ArrayLike,
-    convective: str = "sutton-graves",
+    correlation: str = "sutton-graves",
 ) -> Floats:
     """Return the continuum convective heat flux to a stagnation point, positive into the wall.
 
@@ -193,7 +193,7 @@ def convective_flux(
         its nose [ZobySullivan1966].
     total_enthalpy : (...,) array_like [J/kg]
     wall_temperature : (...,) array_like [K]
-    convective : str
+    correlation : str
         Key of `CONVECTIVE`.
 
     Returns
@@ -217,7 +217,7 @@ def convective_flux(
     >>> round(float(q) / 1e6, 2)
     2.41
     """
-    chosen = correlation_named(convective)
+    chosen = correlation_named(correlation)
     cold = chosen(density, speed, nose_radius)
     reference = reference_enthalpy(chosen)
     return cold * hot_wall_factor(total_enthalpy, wall_enthalpy(wall_temperature), reference)
@@ -226,7 +226,7 @@ def convective_flux(
 def correlation_named(name: str) -> Correlation:
     """Return a correlation of `CONVECTIVE`, or say which there are."""
     if name not in CONVECTIVE:
-        raise ValueError(f"convective is '{name}', expected one of: {', '.join(CONVECTIVE)}")
+        raise ValueError(f"correlation is '{name}', expected one of: {', '.join(CONVECTIVE)}")
     return CONVECTIVE[name]
 
 

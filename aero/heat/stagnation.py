@@ -44,7 +44,7 @@ class Stagnation:
         d total/d T_w.
     radiative_validity : (...,) int8 array
         Keys of `aero.heat.RADIATIVE_VALIDITY`.
-    convective : str
+    correlation : str
         Key of `aero.heat.CONVECTIVE`.
     """
 
@@ -58,11 +58,11 @@ class Stagnation:
     continuum_weight: Floats
     by_wall_temperature: Floats
     radiative_validity: np.ndarray[tuple[int, ...], np.dtype[np.int8]]
-    convective: str
+    correlation: str
 
     def __str__(self) -> str:
         count = self.total.size
-        return f"Stagnation({self.convective}, {count} point{'' if count == 1 else 's'}; W/m2, K)"
+        return f"Stagnation({self.correlation}, {count} point{'' if count == 1 else 's'}; W/m2, K)"
 
 
 def continuum_weight(continuum: ArrayLike, free_molecular: ArrayLike, exponent: float = 2.0) -> Floats:
@@ -121,9 +121,15 @@ def bridged_flux(continuum: ArrayLike, free_molecular: ArrayLike, exponent: floa
 
 
 def _blend(c: Floats, f: Floats, weight: Floats, exponent: float) -> Floats:
-    size = np.abs(c) * (np.sqrt(weight) if exponent == 2.0 else weight ** (1.0 / exponent))
-    # w underflows only where |q_c| is beyond 1e150 |q_fm|, and is 0/0 only where both limits are 0
-    size = np.where((c == 0.0) | (f == 0.0), np.abs(c) * np.abs(f), size)
+    first, second = np.abs(c), np.abs(f)
+    small, large = np.minimum(first, second), np.maximum(first, second)
+    with np.errstate(invalid="ignore"):  # 0/0 where both limits are 0
+        ratio = small / large
+    if exponent == 2.0:
+        size = small / np.sqrt(1.0 + ratio * ratio)
+    else:
+        size = small * (1.0 + ratio**exponent) ** (-1.0 / exponent)
+    size = np.where(large == 0.0, 0.0, size)
     if not (c * f < 0.0).any():
         return np.copysign(size, c)
     share = weight * np.sign(c) + (1.0 - weight) * np.sign(f)
@@ -137,10 +143,10 @@ def stagnation(
     accommodation: ArrayLike,
     wall: ArrayLike | str,
     *,
-    convective: str = "sutton-graves",
+    correlation: str = "sutton-graves",
     exponent: float = 2.0,
-) -> Stagnation:
-    """Return the heating of a vehicle's stagnation point.
+) -> Stagnation | None:
+    """Return the heating of a vehicle's stagnation point, or None when it has no nose radius.
 
     Parameters
     ----------
@@ -152,17 +158,16 @@ def stagnation(
         Energy accommodation, already resolved.
     wall : (...,) array_like [K] or "radiative"
         A given wall temperature, or the one that balances heating and radiation.
-    convective : str, optional
+    correlation : str, optional
         Key of `aero.heat.CONVECTIVE`.
     exponent : float, optional
         p of the blend between the limits.
 
     Returns
     -------
-    Stagnation
-        All fluxes are NaN for a vehicle without a nose radius; its wall in radiative balance then takes half
-        the reference length for one (judgement). All fluxes are 0 at speed 0, where a wall in radiative
-        balance has the temperature of its surroundings. NaN where the air or the correlation has no answer.
+    Stagnation or None
+        All fluxes are 0 at speed 0, where a wall in radiative balance has the temperature of its
+        surroundings. NaN where the air or the correlation has no answer.
 
     Raises
     ------
@@ -174,7 +179,10 @@ def stagnation(
     A cylinder's stagnation line receives 0.57/0.763 of the continuum flux of a sphere's point of the same
     radius [FayRiddell1958].
     """
-    limits = _Limits.of(vehicle, air, flow, accommodation, convective, exponent)
+    radius = vehicle.nose_radius
+    if radius is None:
+        return None
+    limits = _Limits.of(vehicle, radius, air, flow, accommodation, correlation, exponent)
     if isinstance(wall, str):
         if wall != "radiative":
             raise ValueError(f"wall is '{wall}', expected a temperature in kelvin or 'radiative'")
@@ -182,10 +190,7 @@ def stagnation(
     else:
         temperature = np.broadcast_to(floats(wall), flow.speed.shape)
     continuum, free, weight, bridged, slope = limits.at(temperature)
-    radiative = limits.radiative
-    total = bridged + radiative
-    if vehicle.nose_radius is None:
-        total = continuum = free = bridged = radiative = slope = weight = np.full(total.shape, np.nan)
+    total = bridged + limits.radiative
     with np.errstate(divide="ignore", invalid="ignore"):
         speed = np.where(flow.speed > 0.0, flow.speed, np.nan)
         coefficient = total / (0.5 * air.density * speed * speed * speed)
@@ -194,13 +199,13 @@ def stagnation(
         bridged=bridged,
         free_molecular=free,
         continuum=continuum,
-        radiative=radiative,
+        radiative=limits.radiative,
         wall_temperature=temperature,
         coefficient=coefficient,
         continuum_weight=weight,
         by_wall_temperature=slope,
-        radiative_validity=radiative_validity(air.density, flow.speed, limits.radius),
-        convective=convective,
+        radiative_validity=radiative_validity(air.density, flow.speed, radius),
+        correlation=correlation,
     )
 
 
@@ -214,20 +219,19 @@ class _Limits:
     emitted: Floats
     radiative: Floats
     exponent: float
-    radius: float
 
     @classmethod
     def of(
         cls,
         vehicle: Vehicle,
+        radius: float,
         air: Air,
         flow: Flow,
         accommodation: ArrayLike,
-        convective: str,
+        correlation: str,
         exponent: float,
     ) -> _Limits:
-        chosen = correlation_named(convective)
-        radius = 0.5 * vehicle.reference_length if vehicle.nose_radius is None else vehicle.nose_radius
+        chosen = correlation_named(correlation)
         cold = chosen(air.density, flow.speed, radius) * (_LINE if vehicle.body_class == "cylinder" else 1.0)
         reference = np.minimum(reference_enthalpy(chosen), 0.25 * flow.total_enthalpy)
         share = floats(accommodation) * vehicle.surface.diffuse_fraction
@@ -240,7 +244,6 @@ class _Limits:
             emitted=emitted * moving,
             radiative=radiative_flux(air.density, flow.speed, radius),
             exponent=exponent,
-            radius=radius,
         )
 
     def at(self, temperature: Floats) -> tuple[Floats, Floats, Floats, Floats, Floats]:

@@ -106,7 +106,7 @@ def test_every_body_class_has_every_coefficient_with_a_source():
             assert row.source
             if isinstance(row, Bridge):
                 assert row.function in BRIDGES
-                assert row.variable in SIMILARITY
+                assert row.similarity in SIMILARITY
                 assert row.centre_sigma > 0.0
                 assert row.width_sigma > 0.0
             else:

@@ -41,6 +41,13 @@ def test_blend_is_the_formula(c, f, p):
     assert float(bridged_flux(-c, -f, p)) == pytest.approx(-float(bridged_flux(c, f, p)), rel=1e-12)
 
 
+def test_blend_against_matting():
+    """Matting 1971 (from memory): q = q_c (1 - exp(-q_fm/q_c)); they differ by less than the 15 % stated."""
+    ratio = np.logspace(-3, 3, 601)
+    ours, theirs = bridged_flux(1.0, ratio), 1.0 - np.exp(-ratio)
+    assert np.abs(ours / theirs - 1.0).max() < 0.15
+
+
 def test_blend_goes_smoothly_through_a_change_of_sign():
     """Continuum -1 to 1 against a free-molecular +-3: no step larger than that of the limits."""
     c = np.linspace(-1.0, 1.0, 4001)
@@ -106,7 +113,7 @@ def test_radiative_wall_of_a_body_against_a_bracketing_root_finder():
 @pytest.mark.parametrize("name", CONVECTIVE)
 def test_bundle_is_consistent_and_complete(name):
     air, moving = states()
-    heat = stagnation(BALL, air, moving, 0.95, 350.0, convective=name)
+    heat = stagnation(BALL, air, moving, 0.95, 350.0, correlation=name)
     if name != "brandis-johnston":  # has no answer below 3 km/s
         assert np.isfinite(heat.total).all()
     known = np.isfinite(heat.total)
@@ -144,22 +151,11 @@ def test_at_rest_nothing_flows_and_the_wall_takes_its_surroundings():
     assert np.isnan(heat.coefficient).all()
 
 
-def test_without_a_nose_radius_there_is_a_wall_but_no_heating():
+def test_without_a_nose_radius_there_is_no_heating():
     box = Vehicle.from_shape(Box(length=0.3, width=0.1, height=0.1))
     assert box.nose_radius is None
     air, moving = states(5)
-    heat = stagnation(box, air, moving, 1.0, "radiative")
-    for flux in (
-        heat.total,
-        heat.bridged,
-        heat.continuum,
-        heat.free_molecular,
-        heat.radiative,
-        heat.coefficient,
-    ):
-        assert np.isnan(flux).all()
-    assert np.isfinite(heat.wall_temperature).all()
-    assert (stagnation(box, air, moving, 1.0, 321.0).wall_temperature == 321.0).all()
+    assert stagnation(box, air, moving, 1.0, 300.0) is None
 
 
 def test_a_line_is_heated_less_than_a_point():
@@ -178,7 +174,7 @@ def test_wrong_calls_are_named():
     with pytest.raises(ValueError, match="wall is 'cold'"):
         stagnation(BALL, air, moving, 1.0, "cold")
     with pytest.raises(ValueError, match="expected one of: sutton-graves"):
-        stagnation(BALL, air, moving, 1.0, 300.0, convective="hot")
+        stagnation(BALL, air, moving, 1.0, 300.0, correlation="hot")
 
 
 @given(
@@ -194,7 +190,7 @@ def test_an_answer_wherever_there_is_air(density, speed, temperature, wall, acco
     heat = stagnation(BALL, air, flow(air, speed), accommodation, wall, exponent=exponent)
     assert np.isfinite(heat.total)
     assert np.isfinite(heat.wall_temperature)
-    assert np.isfinite(heat.by_wall_temperature) or speed == 0.0
+    assert np.isfinite(heat.by_wall_temperature) or heat.total == 0.0
     assert abs(heat.bridged) <= abs(heat.free_molecular) * (1 + 1e-9)
     assert heat.radiative >= 0.0
 

@@ -75,7 +75,7 @@ def test_every_correlation_scalar_array_empty_and_at_rest(name):
 
 
 def test_unknown_correlation_is_named():
-    with pytest.raises(ValueError, match=r"convective is 'fay', expected one of: sutton-graves"):
+    with pytest.raises(ValueError, match=r"correlation is 'fay', expected one of: sutton-graves"):
         convective_flux(1e-4, 7000.0, 1.0, 25e6, 300.0, "fay")
 
 
