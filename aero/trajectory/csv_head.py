@@ -40,7 +40,7 @@ def check_text(data: bytes, source: str) -> None:
     InputError
         If the file is empty, binary, or in another encoding.
     """
-    if not data.strip():
+    if not data or data.isspace():
         raise InputError("is empty, expected a header and rows", source=source, remedy="give a trajectory")
     if data[:2] in (b"\xff\xfe", b"\xfe\xff"):
         raise InputError("is UTF-16 text, expected UTF-8", source=source, remedy=_SAVE)

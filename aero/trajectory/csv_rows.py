@@ -102,7 +102,8 @@ def fast_columns(data: bytes, head: Head, layout: Layout, first: list[list[str]]
     -----
     Whatever this reads, `careful_columns` reads the same; it declines whenever it is not sure.
     """
-    if b"0x" in data or b"0X" in data:  # would be taken for whole numbers in hexadecimal; here they are text
+    # 0x1 would be taken for a whole number in hexadecimal; here it is text. One letter is found sooner.
+    if (b"x" in data and b"0x" in data) or (b"X" in data and b"0X" in data):
         return None
     names = [str(place) for place in range(len(head.headers))]
     dates = {
