@@ -192,7 +192,7 @@ def revolve(along: Floats, radii: Floats, around: int) -> Panels:
     points = radii[:, None, None] * ring + along[:, None, None] * np.array([1.0, 0.0, 0.0])
     a, b = points[:-1, :-1], points[1:, :-1]
     c, d = points[1:, 1:], points[:-1, 1:]
-    return _of_quads(np.stack([a, b, c, d], axis=-2).reshape(-1, 4, 3))
+    return _of_quads(np.stack([a, d, c, b], axis=-2).reshape(-1, 4, 3))
 
 
 def rectangles(corner: Floats, first: Floats, second: Floats, split: int) -> Panels:

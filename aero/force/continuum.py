@@ -54,7 +54,8 @@ def continuum(
     Notes
     -----
     C = C_p,max I + C_p,base I_lee + friction, I the integral of cosine squared over the faces in the flow
-    [Lees1955]. Friction for slender bodies and plates only (`aero.force.friction` says why). Meant for
+    [Lees1955]. Friction for slender bodies and plates only (`aero.force.friction` says why), times the
+    diffuse fraction (right at 0, where no wall holds the gas, and at 1; judgement between). Meant for
     Mach 2 and above; below it is an extrapolation that stays finite and positive. A `[continuum]` table
     replaces drag, and lift where it has lift, whole.
 
@@ -106,6 +107,7 @@ def _of_shape(
     axial = axial_friction(
         body, flow.reynolds_per_m, knudsen, mach, gamma, air.temperature, wall_temperature, peak, angle
     )
+    axial = axial * vehicle.surface.diffuse_fraction
     per_area = 1.0 / vehicle.reference_area
     base_drag, friction_drag = base * areas.lee_drag * per_area, axial * cosine * per_area
     drag = peak * areas.drag * per_area + base_drag + friction_drag

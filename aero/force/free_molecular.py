@@ -69,7 +69,8 @@ def free_molecular(
     S_i the speed ratio of each species; 2 k T_e,i = (1 - alpha) E_i + alpha 2 k T_w with E_i the mean
     translational energy of the molecules of that species that strike the body. Convex body, no second
     reflection, Maxwell's diffuse fraction. The tables are good to 1e-6 for speed ratios of 0.01 to 100;
-    below 0.0009 the limit C proportional to 1/S is used.
+    below 0.0009 the limit C proportional to 1/S is used. Over a changing angle of attack the tables of
+    bodies of revolution are good to 1e-6 up to a speed ratio of 15, 2e-5 above (flow along the cone's side).
 
     References
     ----------
@@ -88,8 +89,6 @@ def free_molecular(
     shape = np.broadcast_shapes(air.temperature.shape, flow.speed.shape)
     angle = vehicle.angle_of_attack if angle_of_attack is None else angle_of_attack
     if vehicle.shape is None:
-        return Coefficients(*(np.full(shape, np.nan) for _ in range(4)))
-    if np.isnan(np.asarray(angle)).any() and np.ndim(angle) == 0:
         return Coefficients(*(np.full(shape, np.nan) for _ in range(4)))
 
     def flat(values: ArrayLike) -> Floats:
@@ -164,7 +163,7 @@ def _look_up(shape: Shape, diffuse: float, angle: ArrayLike, points: tuple[int, 
     """Return what gives the rows of a block: one table, tables over angle, or closed forms of flat faces."""
     angles = floats(angle)
     first = float(angles.flat[0]) if angles.size else 0.0
-    if not shape.lifts or angles.ndim == 0 or angles.size <= 1 or bool((angles == first).all()):
+    if not shape.lifts or bool((angles == first).all()):
         return _at_one_angle(shape, diffuse, first if shape.lifts else 0.0)
     spread = np.broadcast_to(angles, points).reshape(-1)
     return (_flat_faced if shape.flat_faced else _over_angles)(shape, diffuse, spread)

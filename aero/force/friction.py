@@ -113,7 +113,7 @@ def axial_friction(
     -----
     Plate: both faces, speed V |cos a| at the edge, Newtonian pressure on the face in the flow and free-stream
     pressure on the other. Cone: speed V cos(half angle), Newtonian pressure at zero angle of attack, times
-    |cos a|^(3/2); a spherical nose is taken as part of the cone. Positive towards the rear.
+    cos(a)^(3/2), 0 base first; a spherical nose is taken as part of the cone. Positive towards the rear.
     """
     if shape.body_class not in FRICTION_CLASSES:
         return np.zeros(np.broadcast_shapes(np.shape(mach), np.shape(angle_of_attack)))
@@ -135,5 +135,6 @@ def axial_friction(
     if isinstance(shape, (Cone, SphereCone)):
         along, across = np.cos(shape.half_angle), np.sin(shape.half_angle)
         local = CONE * mean(shape.base_radius / across, along, across * across)
-        return floats(cosine * np.sqrt(speed) * local * along * shape.frontal_area / across)
+        ahead = np.maximum(cosine, 0.0)  # base first, the side lies in the wake
+        return floats(ahead * np.sqrt(ahead) * local * along * shape.frontal_area / across)
     raise ValueError(f"no friction model for a {shape.kind}")

@@ -87,7 +87,7 @@ def real_gas_rise(speed: ArrayLike) -> Floats:
     Notes
     -----
     a x/(1 + x) + b y/(1 + y), x = (V/V_1)^6, y = (V/V_2)^4: dissociation makes the shock layer denser and the
-    coefficient, about 2 - rho_1/rho_2, larger: 1.92 at 5 km/s, 1.94 at 8 km/s. Fit to own computation, see
+    coefficient, about 2 - rho_1/rho_2, larger: 1.93 at 6 km/s, 1.94 at 8 km/s. Fit to own computation, see
     `REAL_GAS`; extrapolated (flat) above 12 km/s.
 
     References
@@ -96,8 +96,8 @@ def real_gas_rise(speed: ArrayLike) -> Floats:
 
     Examples
     --------
-    >>> np.round(1.838 + real_gas_rise([5000.0, 8000.0]), 2)
-    array([1.92, 1.94])
+    >>> np.round(1.838 + real_gas_rise([6000.0, 8000.0]), 2)
+    array([1.93, 1.94])
     """
     oxygen, oxygen_speed, nitrogen, nitrogen_speed = REAL_GAS
     square = floats(speed) * floats(speed)

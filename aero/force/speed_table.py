@@ -17,7 +17,7 @@ from aero.body.shapes import Shape
 from aero.force.elements import SQRT_PI, Momentum, cylinder, incident, sphere
 
 LOW, HIGH = -7.0, 7.0  # ln S: speed ratios 0.0009 to 1097
-STEPS_A_UNIT = 32  # 1e-7 of a drag coefficient
+STEPS_A_UNIT = 32  # 5e-9 of a drag coefficient
 CELLS = int(HIGH - LOW) * STEPS_A_UNIT
 ANGLE_STEP = np.pi / 360.0  # half a degree
 ANGLES = 364  # from one step below 0 to two beyond pi
@@ -141,7 +141,7 @@ class AngleTable:
             self.made[index] = True
 
 
-@lru_cache(maxsize=4)
+@lru_cache(maxsize=2)
 def angle_table(shape: Shape, diffuse_fraction: float) -> AngleTable:
     """Return the table over angle of attack of a body, the same one on every call."""
     return AngleTable(shape, diffuse_fraction)
