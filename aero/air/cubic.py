@@ -86,21 +86,44 @@ def monotone_slopes(x: Floats, y: Floats) -> Floats:
     chord = np.diff(y) / step
     if chord.size == 1:
         return np.array([chord[0], chord[0]])
-    slopes = np.zeros_like(y)
-    before, after = chord[:-1], chord[1:]
-    w1 = 2.0 * step[1:] + step[:-1]
-    w2 = step[1:] + 2.0 * step[:-1]
-    same = before * after > 0.0
-    slopes[1:-1][same] = (w1 + w2)[same] / (w1[same] / before[same] + w2[same] / after[same])
-    slopes[0] = _end_slope(step[0], step[1], chord[0], chord[1])
-    slopes[-1] = _end_slope(step[-1], step[-2], chord[-1], chord[-2])
+    slopes = np.empty_like(y)
+    slopes[1:-1] = _inner_slope(step[:-1], step[1:], chord[:-1], chord[1:])
+    slopes[:1] = _end_slope(step[:1], step[1:2], chord[:1], chord[1:2])
+    slopes[-1:] = _end_slope(step[-1:], step[-2:-1], chord[-1:], chord[-2:-1])
     return slopes
 
 
-def _end_slope(near: float, far: float, chord_near: float, chord_far: float) -> float:
+def stencil_slopes(x: Floats, y: Floats) -> Floats:
+    """Return `monotone_slopes` of many runs of three points at once.
+
+    Parameters
+    ----------
+    x, y : (..., 3) array
+
+    Returns
+    -------
+    (..., 3) array
+        The middle one is the slope inside a longer run; the outer ones hold where a run ends there.
+    """
+    step = np.diff(x, axis=-1)
+    chord = np.diff(y, axis=-1) / step
+    near, far, before, after = step[..., 0], step[..., 1], chord[..., 0], chord[..., 1]
+    first, last = _end_slope(near, far, before, after), _end_slope(far, near, after, before)
+    return np.stack([first, _inner_slope(near, far, before, after), last], axis=-1)
+
+
+def _inner_slope(step_before: Floats, step_after: Floats, before: Floats, after: Floats) -> Floats:
+    product = before * after
+    w1 = 2.0 * step_after + step_before
+    w2 = step_after + 2.0 * step_before
+    # (w1 + w2)/(w1/before + w2/after), written without a division by a chord that may be 0
+    weighted = w1 * after + w2 * before
+    same = product > 0.0
+    return np.divide((w1 + w2) * product, weighted, out=np.zeros_like(product), where=same)
+
+
+def _end_slope(near: Floats, far: Floats, chord_near: Floats, chord_far: Floats) -> Floats:
     slope = ((2.0 * near + far) * chord_near - near * chord_far) / (near + far)
-    if slope * chord_near <= 0.0:
-        return 0.0
-    if chord_near * chord_far <= 0.0 and abs(slope) > 3.0 * abs(chord_near):
-        return 3.0 * chord_near
-    return slope
+    slope = np.where(slope * chord_near <= 0.0, 0.0, slope)
+    steep = (chord_near * chord_far <= 0.0) & (np.abs(slope) > 3.0 * np.abs(chord_near))
+    return np.where(steep, 3.0 * chord_near, slope)

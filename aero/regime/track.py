@@ -10,47 +10,62 @@ from dataclasses import dataclass
 
 import numpy as np
 
-from aero.air.cubic import monotone_slopes
+from numpy.typing import NDArray
+
+from aero.air.cubic import monotone_slopes, stencil_slopes
 from aero.arrays import Floats, Times
 from aero.trajectory import Trajectory
 
 
 @dataclass(frozen=True, eq=False)
 class Cubic:
-    """A shape-preserving cubic through samples, with its integral.
+    """A shape-preserving cubic through samples.
 
     Attributes
     ----------
-    time, values, slopes : (n,) arrays
+    time, values : (n,) arrays, n >= 2
+
+    Notes
+    -----
+    The slope at a sample depends on its two neighbours alone, so a value costs a stencil of four samples and
+    nothing is prepared for the whole flight.
     """
 
     time: Floats
     values: Floats
-    slopes: Floats
 
-    @classmethod
-    def through(cls, time: Floats, values: Floats) -> Cubic:
-        """Return the cubic through samples."""
-        return cls(time, values, monotone_slopes(time, values))
+    def __call__(self, when: Floats) -> Floats:
+        """Return the value at each time between the first and the last sample."""
+        i, step, s = self._locate(when)
+        rise, a, b = self._shape(i, step)
+        return self.values[i] + s * rise + s * (1.0 - s) * ((1.0 - s) * a + s * b)
 
-    def _locate(self, when: Floats) -> tuple[np.ndarray, Floats, Floats]:
+    def _locate(self, when: Floats) -> tuple[NDArray[np.intp], Floats, Floats]:
         index = np.clip(np.searchsorted(self.time, when, side="right") - 1, 0, self.time.size - 2)
         step = self.time[index + 1] - self.time[index]
         return index, step, (when - self.time[index]) / step
 
-    def __call__(self, when: Floats) -> Floats:
-        """Return the value at each time."""
-        i, step, s = self._locate(when)
+    def _shape(self, i: NDArray[np.intp], step: Floats) -> tuple[Floats, Floats, Floats]:
+        """Return the rise over each interval and how far its end slopes lie from the chord."""
         rise = self.values[i + 1] - self.values[i]
-        a = self.slopes[i] * step - rise
-        b = rise - self.slopes[i + 1] * step
-        return self.values[i] + s * rise + s * (1.0 - s) * ((1.0 - s) * a + s * b)
+        return rise, self._slope(i) * step - rise, rise - self._slope(i + 1) * step
+
+    def _slope(self, i: NDArray[np.intp]) -> Floats:
+        """Return the slope at samples, from the stencil around each."""
+        last = self.time.size - 1
+        if last == 1:
+            return np.full(i.shape, (self.values[1] - self.values[0]) / (self.time[1] - self.time[0]))
+        middle = np.clip(i, 1, last - 1)
+        stencil = middle[..., None] + np.array([-1, 0, 1])
+        slopes = stencil_slopes(self.time[stencil], self.values[stencil])
+        return np.take_along_axis(slopes, (i - middle + 1)[..., None], axis=-1)[..., 0]
 
     def running_integral(self) -> Floats:
         """Return the integral from the first sample to each sample."""
         step = np.diff(self.time)
+        slopes = monotone_slopes(self.time, self.values)
         pieces = step * (self.values[:-1] + self.values[1:]) / 2.0
-        pieces += step * step * (self.slopes[:-1] - self.slopes[1:]) / 12.0
+        pieces += step * step * (slopes[:-1] - slopes[1:]) / 12.0
         total = np.empty_like(self.values)
         total[0] = 0.0
         np.cumsum(pieces, out=total[1:])
@@ -59,9 +74,7 @@ class Cubic:
     def integral(self, when: Floats, running: Floats) -> Floats:
         """Return the integral from the first sample to each time, given `running_integral()`."""
         i, step, s = self._locate(when)
-        rise = self.values[i + 1] - self.values[i]
-        a = self.slopes[i] * step - rise
-        b = rise - self.slopes[i + 1] * step
+        rise, a, b = self._shape(i, step)
         # Integrals over 0..s of s, s(1-s)^2 and s^2(1-s).
         part = self.values[i] * s + rise * s * s / 2.0
         part += a * s * s * (0.5 - 2.0 * s / 3.0 + s * s / 4.0) + b * s * s * s * (1.0 / 3.0 - s / 4.0)
@@ -96,10 +109,10 @@ class Track:
             raise ValueError("a track needs a trajectory with times")
         placed = trajectory.latitude is not None and trajectory.longitude is not None
         return cls(
-            Cubic.through(time, trajectory.altitude),
-            Cubic.through(time, trajectory.speed),
-            Cubic.through(time, trajectory.latitude) if placed else None,
-            Cubic.through(time, np.unwrap(trajectory.longitude)) if placed else None,
+            Cubic(time, trajectory.altitude),
+            Cubic(time, trajectory.speed),
+            Cubic(time, trajectory.latitude) if placed else None,
+            Cubic(time, np.unwrap(trajectory.longitude)) if placed else None,
             trajectory.epoch,
         )
 

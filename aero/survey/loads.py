@@ -31,7 +31,7 @@ class Load:
     @classmethod
     def of(cls, time: Floats, rate: Floats) -> Load:
         """Return the running integral of a rate; NaN rates make it NaN from there on."""
-        cubic = Cubic.through(time, rate)
+        cubic = Cubic(time, rate)
         return cls(cubic, cubic.running_integral())
 
     def between(self, start: Floats, end: Floats) -> Floats:

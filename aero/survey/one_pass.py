@@ -11,11 +11,11 @@ import pandas as pd
 
 from aero.air import Msis, StandardAtmosphere1976
 from aero.air.state import Air, Atmosphere
-from aero.arrays import Floats
+from aero.arrays import Floats, Times
 from aero.body import Vehicle
 from aero.gas import free_path_uncertainty
 from aero.regime import REGIMES, Crossings, Cuts, Track, cut_segments, find_crossings
-from aero.regime.track import clock
+from aero.regime.track import Cubic, clock
 from aero.survey.chain import Inputs, conditions
 from aero.survey.columns import CROSSING_COLUMNS, SEGMENT_COLUMNS, free_name, point_columns
 from aero.survey.loads import Load, share
@@ -171,13 +171,12 @@ def _reach(trajectory: Trajectory) -> tuple[float, float]:
     return max(ALTITUDE_RANGE[0], min(0.0, float(trajectory.altitude.min()))), ALTITUDE_RANGE[1]
 
 
-def block_inputs(trajectory: Trajectory, rows: slice) -> Inputs:
+def block_inputs(trajectory: Trajectory, rows: slice, utc: Times | None) -> Inputs:
     """Return the part of a trajectory that one pass of the chain works on."""
 
     def part(values: Floats | None) -> Floats | None:
         return None if values is None else values[rows]
 
-    utc = trajectory.utc
     return Inputs(
         altitude=trajectory.altitude[rows],
         speed=trajectory.speed[rows],
@@ -199,14 +198,16 @@ def _points(
 ) -> dict[str, np.ndarray]:
     """Return all computed columns, filled block by block into arrays made once."""
     count = trajectory.altitude.size
+    kept = {column.name for column in point_columns(list(lengths))}
+    utc = trajectory.utc if atmosphere.needs_place else None
     columns: dict[str, np.ndarray] = {}
     for start in range(0, count, BLOCK):
         rows = slice(start, min(start + BLOCK, count))
-        part = conditions(block_inputs(trajectory, rows), atmosphere, vehicle, lengths, settings)
-        for name, values in part.items():
+        part = conditions(block_inputs(trajectory, rows, utc), atmosphere, vehicle, lengths, settings)
+        for name in kept & part.keys():
             if name not in columns:
-                columns[name] = np.empty(count, dtype=values.dtype)
-            columns[name][rows] = values
+                columns[name] = np.empty(count, dtype=part[name].dtype)
+            columns[name][rows] = part[name]
         if progress:
             progress(rows.stop - rows.start)
     if trajectory.time is not None:
@@ -273,7 +274,7 @@ def _segment_table(
     assert time is not None  # a track has times
     values = list(lengths.values())
     cuts = cut_segments(time, columns["mean_free_path_m"], values, settings.bounds, found)
-    heat = Load.of(time, columns["heat_flux_W_m2"])
+    heat = Load(Cubic(time, columns["heat_flux_W_m2"]), columns["heat_load_J_m2"])
     slowing = Load.of(time, columns["drag_deceleration_m_s2"])
     heat_parts = heat.between(cuts.start, cuts.end)
     slow_parts = slowing.between(cuts.start, cuts.end)
