@@ -14,6 +14,7 @@ from scipy.stats import norm
 from aero.body import BODY_CLASSES, Sphere, Vehicle
 from aero.bridge import DEFAULTS, blend, drag_band, heat_band
 from aero.bridge.uncertainty import COVERAGE
+from aero.force import free_molecular
 from aero.gas import flow, mixed_air
 from aero.heat import convective_sigma, radiative_sigma, stagnation
 
@@ -65,6 +66,33 @@ def test_drag_contributions_against_finite_changes(body):
     np.testing.assert_allclose(
         part["continuum level"], shift(raised) / step * bridge.continuum_sigma, **tolerance
     )
+
+
+@pytest.mark.parametrize("alpha", [1.0, 0.95, 0.8, 0.4])
+def test_accommodation_counts_along_the_chord(alpha):
+    """A sphere in one gas at 7.7 km/s: the drag itself 1.96 x 0.05 lower in accommodation.
+
+    A mixture's species share one excess here, and the drag's own change enters ln C to first order.
+    """
+    bridge, spread = DEFAULTS["sphere", "drag"], 0.05
+    air = mixed_air(900.0, 1e14, [1, 0, 0, 0, 0, 0, 0], altitude=300e3)
+    moving = flow(air, 7700.0)
+    here, lower = (free_molecular(BALL, air, moving, 300.0, a) for a in (alpha, alpha - COVERAGE * spread))
+    doubt = {
+        "density_sigma": (0.0, 0.0),
+        "cross_section": 0.0,
+        "accommodation": spread,
+        "wall_temperature": 300.0,
+    }
+    tangent, chord = (
+        drag_band(here.drag, 0.95, here, bridge, 1e9, energy_accommodation=given, **doubt).contributions[
+            "accommodation"
+        ]
+        for given in (None, alpha)
+    )
+    exact = -(lower.drag - here.drag) / here.drag / COVERAGE
+    assert float(chord) == pytest.approx(float(exact), rel=1e-3)
+    assert abs(tangent) >= abs(chord)
 
 
 def test_denser_air_or_larger_molecules_mean_less_drag_coefficient():
