@@ -8,6 +8,8 @@ from collections.abc import Mapping, Sequence
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING, Any
 
+import numpy as np
+
 from aero.report import palette
 from aero.report.columns import ReadyColumn, ready
 from aero.report.names import Table, row_count, visible
@@ -189,10 +191,11 @@ def _anchors(titles: Sequence[str]) -> list[str]:
 
 
 def _sheet(sheet: Sheet) -> dict[str, Any]:
-    columns = ready(sheet.table, sheet.columns, powers=True)
     count = row_count(sheet.table)
     shown = min(count, ROWS)
-    cells = [_cells(one, shown) for one in columns]
+    head = {str(name): np.asarray(values)[:shown] for name, values in dict(sheet.table).items()}
+    columns = ready(head, sheet.columns, powers=True)
+    cells = [_cells(one) for one in columns]
     more = ""
     if count > shown:
         where = f"; all of them in {visible(sheet.file)}" if sheet.file else ""
@@ -208,15 +211,15 @@ def _sheet(sheet: Sheet) -> dict[str, Any]:
     }
 
 
-def _cells(one: ReadyColumn, shown: int) -> list[dict[str, Any]]:
+def _cells(one: ReadyColumn) -> list[dict[str, Any]]:
     """Return cells; a number comes in two parts that meet at its decimal point, and with its full value."""
-    cells = one.cells[:shown]
+    cells = one.cells
     if one.kind != "number" or one.values is None:
         return [{"kind": one.kind, "text": cell} for cell in cells]
     parts = [split_decimal(cell) for cell in cells]
     # A power of ten would push the column apart: it stands at the right edge instead.
     room = max((len(rest) for _, rest in parts if "×" not in rest), default=0)
-    values = one.values[:shown].tolist()
+    values = one.values.tolist()
     return [
         {
             "kind": "number",
@@ -268,6 +271,9 @@ def inline_svg(svg: str, prefix: str) -> str:
     """
     body = svg[svg.index("<svg") :].strip()
     body = re.sub(r"<metadata>.*?</metadata>", "", body, flags=re.DOTALL)
+    body = re.sub(
+        r"\s*<defs>\s*<style[^>]*>[^<]*</style>\s*</defs>", "", body, count=1
+    )  # the page has its own
     body = re.sub(r'^<svg [^>]*?(viewBox="[^"]*")[^>]*>', r"<svg \1>", body)
     return _TAG.sub(lambda tag: _tag(tag.group(), prefix), body)
 

@@ -16,6 +16,7 @@ from aero.report.names import Table, column, has_numbers, row_count, texts
 from aero.report.scales import time_unit
 from aero.report.style import SMALL, text_width
 
+_FINEST = 0.005  # in: one pixel of a PNG; no piece is drawn narrower where many crowd
 NO_TIME = "no time in the trajectory: points drawn one by one"
 
 
@@ -87,7 +88,7 @@ def draw_pieces(axes: Axes, pieces: Sequence[Piece], row: float, half: float) ->
     left, right = axes.get_xlim()
     figure = axes.get_figure(root=True)
     per_unit = float(axes.bbox.width / figure.dpi / (right - left))  # type: ignore[union-attr]
-    for piece in pieces:
+    for piece in legible(pieces, _FINEST / per_unit):
         patch = Rectangle(
             (piece.start, row - half),
             piece.end - piece.start,
@@ -108,6 +109,39 @@ def draw_pieces(axes: Axes, pieces: Sequence[Piece], row: float, half: float) ->
                 va="center_baseline",
                 gid="share",
             )
+
+
+def legible(pieces: Sequence[Piece], finest: float) -> list[Piece]:
+    """Join neighbours narrower than `finest` into pieces as wide, each of the regime that lasts longest in it.
+
+    Examples
+    --------
+    >>> many = [Piece(r, t, t + d, 0.1) for t, d, r in [(0, 9, "slip"), (9, 0.2, "continuum"), (9.2, 0.3, "slip")]]
+    >>> [(piece.regime, piece.end) for piece in legible(many, 0.5)]
+    [('slip', 9), ('slip', 9.5)]
+    """
+    made: list[Piece] = []
+    crowd: list[Piece] = []
+    for piece in pieces:
+        if piece.end - piece.start >= finest:
+            made += [*_joined(crowd), piece]
+            crowd = []
+        else:
+            crowd.append(piece)
+            if piece.end - crowd[0].start >= finest:
+                made += _joined(crowd)
+                crowd = []
+    return made + _joined(crowd)
+
+
+def _joined(crowd: Sequence[Piece]) -> list[Piece]:
+    if len(crowd) < 2:
+        return list(crowd)
+    lasts: dict[str, float] = {}
+    for piece in crowd:
+        lasts[piece.regime] = lasts.get(piece.regime, 0.0) + piece.end - piece.start
+    longest = max(lasts, key=lambda regime: lasts[regime])
+    return [Piece(longest, crowd[0].start, crowd[-1].end, float("nan"))]
 
 
 def piece_text(piece: Piece, width: float) -> str:

@@ -7,7 +7,9 @@ from __future__ import annotations
 
 import functools
 import io
+import re
 import warnings
+from collections import Counter
 from collections.abc import Callable, Iterator
 from contextlib import contextmanager
 from typing import ParamSpec, TypeVar
@@ -78,6 +80,10 @@ _FOREIGN = (
     "keymap",
     "animation",
 )
+
+# Inside text a ">" and a "<" are always escaped, so this never matches text.
+_TAG = re.compile(r"<[^>]*>")
+_ID = re.compile(r'(\sid=")([^"]*)(")')
 
 P = ParamSpec("P")
 R = TypeVar("R")
@@ -197,6 +203,7 @@ def text_width(text: str, size: float, weight: str = "normal") -> float:
 
 def fit_text(text: str, width: float, size: float, weight: str = "normal") -> str:
     """Return the text, cut in the middle until it is no wider than `width` inches."""
+    width *= 0.93  # a screen rounds small letters to whole pixels, up to that much wider
     shown = visible(text)
     limit = len(shown)
     while limit > 3 and text_width(shown, size, weight) > width:
@@ -223,7 +230,18 @@ def svg(figure: Figure) -> str:
         figure.savefig(
             page, format="svg", metadata={"Date": None, "Creator": None, "Type": None, "Format": None}
         )
-    return page.getvalue()
+    return _own_names(re.sub(r"<!DOCTYPE[^>]*>\s*", "", page.getvalue()))
+
+
+def _own_names(document: str) -> str:
+    """Give elements of one name (all pieces of a regime, say) a number each: a name may stand only once."""
+    seen: Counter[str] = Counter()
+
+    def number(match: re.Match[str]) -> str:
+        seen[match[2]] += 1
+        return match[0] if seen[match[2]] == 1 else f"{match[1]}{match[2]}.{seen[match[2]]}{match[3]}"
+
+    return _TAG.sub(lambda tag: _ID.sub(number, tag[0]), document)
 
 
 def png(figure: Figure) -> bytes:
