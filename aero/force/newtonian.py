@@ -13,7 +13,7 @@ from aero.force.speed_table import ANGLE_STEP, ANGLES, angle_weights
 
 # Equilibrium air over a calorically perfect gas of 1.4 in pitot pressure coefficient: fit to normal shocks
 # computed from partition functions at 60 and 70 km, 1-12 km/s (tests/force/equilibrium_air.py); largest
-# misfit 0.009 there, 0.013 from 50 to 80 km.
+# misfit 0.0074 there, 0.010 from 50 to 80 km.
 REAL_GAS = (0.0664, 2196.0, 0.0388, 4581.0)  # rise, speed [m/s] of oxygen's and of nitrogen's dissociation
 
 BASE_SIGMA = 0.30  # relative 1-sigma of base pressure, judgement

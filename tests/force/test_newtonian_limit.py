@@ -133,7 +133,7 @@ def test_equilibrium_air_lifts_the_stagnation_pressure():
         for speed in (1500.0, 2500.0, 3500.0, 5000.0, 6500.0, 8000.0, 11000.0):
             exact, _ = air.pitot(speed, temperature, pressure)
             fitted = stagnation_pressure_coefficient(speed / sound, 1.4) + real_gas_rise(speed)
-            assert fitted == pytest.approx(exact, abs=0.009)
+            assert fitted == pytest.approx(exact, abs=0.0075)
 
 
 def test_equilibrium_air_is_about_two_less_the_density_ratio():
