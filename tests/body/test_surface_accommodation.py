@@ -21,9 +21,9 @@ def test_half_covered_where_the_langmuir_product_is_one():
 
 
 def test_about_what_a_satellite_showed():
-    # 0.89 from lift over drag at 407 km, November 2002 (Pilinski, Argrow & Palo 2010, abstract). NRLMSISE-00 at
-    # F10.7 165, twelve places: O 1.3e14-2.6e14 /m3, 940-1360 K, 15.5-17.3 g/mol, so ours is 0.94-0.98, mean 0.96,
-    # high by 0.07; it must lie within twice the 1-sigma we state there
+    # 0.89 from lift over drag at 407 km, November 2002 (Pilinski, Argrow & Palo 2010, abstract). NRLMSISE-00
+    # at F10.7 165, twelve places: O 1.3e14-2.6e14 /m3, 940-1360 K, 15.5-17.3 g/mol, so ours is 0.94-0.98,
+    # mean 0.96, high by 0.07; it must lie within twice the 1-sigma we state there
     found = oxygen_coverage(1.8e14, 1120.0, 16.4e-3)
     assert abs(float(found) - 0.89) < 2.0 * float(accommodation_uncertainty(407e3))
 
