@@ -112,13 +112,14 @@ def draw_pieces(axes: Axes, pieces: Sequence[Piece], row: float, half: float) ->
 
 
 def legible(pieces: Sequence[Piece], finest: float) -> list[Piece]:
-    """Join neighbours narrower than `finest` into pieces as wide, each of the regime that lasts longest in it.
+    """Join neighbours narrower than `finest` into pieces as wide, of the regime that lasts longest in each.
 
     Examples
     --------
-    >>> many = [Piece(r, t, t + d, 0.1) for t, d, r in [(0, 9, "slip"), (9, 0.2, "continuum"), (9.2, 0.3, "slip")]]
+    >>> flown = [(0.0, 9.0, "slip"), (9.0, 9.2, "continuum"), (9.2, 9.5, "slip")]
+    >>> many = [Piece(regime, start, end, 0.1) for start, end, regime in flown]
     >>> [(piece.regime, piece.end) for piece in legible(many, 0.5)]
-    [('slip', 9), ('slip', 9.5)]
+    [('slip', 9.0), ('slip', 9.5)]
     """
     made: list[Piece] = []
     crowd: list[Piece] = []

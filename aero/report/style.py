@@ -12,6 +12,7 @@ import warnings
 from collections import Counter
 from collections.abc import Callable, Iterator
 from contextlib import contextmanager
+from pathlib import Path
 from typing import ParamSpec, TypeVar
 
 import matplotlib as mpl
@@ -40,6 +41,7 @@ _RC = {
     "text.parse_math": False,  # a "$" in a name is a dollar sign
     "text.color": palette.INK,
     "svg.fonttype": "none",
+    "pdf.fonttype": 42,
     "svg.hashsalt": "aero",
     "axes.linewidth": 0.6,
     "axes.edgecolor": palette.GREY,
@@ -250,3 +252,42 @@ def png(figure: Figure) -> bytes:
     with look(), _silent_glyphs():
         figure.savefig(image, format="png", dpi=DPI, metadata={"Software": None})
     return image.getvalue()
+
+
+def pdf(figure: Figure) -> bytes:
+    """Return a figure as PDF with text as text, without date or program."""
+    document = io.BytesIO()
+    with look(), _silent_glyphs():
+        figure.savefig(
+            document, format="pdf", metadata={"CreationDate": None, "Creator": None, "Producer": None}
+        )
+    return document.getvalue()
+
+
+FORMATS: dict[str, Callable[[Figure], bytes]] = {
+    "svg": lambda figure: svg(figure).encode(),
+    "png": png,
+    "pdf": pdf,
+}
+
+
+def save_figure(figure: Figure, path: str | Path, kind: str | None = None) -> None:
+    """Write a figure to a file.
+
+    Parameters
+    ----------
+    figure : Figure
+    path : path
+    kind : str, optional
+        A key of `FORMATS`; by default what the name of the file ends in.
+
+    Raises
+    ------
+    ValueError
+        If the kind is not one of them.
+    """
+    target = Path(path)
+    wanted = (kind if kind is not None else target.suffix).lower().lstrip(".")
+    if wanted not in FORMATS:
+        raise ValueError(f"figure format is {wanted!r}, expected one of: {', '.join(FORMATS)}")
+    target.write_bytes(FORMATS[wanted](figure))

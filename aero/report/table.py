@@ -9,7 +9,7 @@ from typing import TYPE_CHECKING
 
 from aero.report.columns import ReadyColumn, ready
 from aero.report.names import Table, shorten
-from aero.report.numbers import align_decimals, format_quantity, split_unit
+from aero.report.numbers import MISSING, align_decimals, format_quantity, split_unit
 from aero.report.palette import REGIME_COLOURS, REGIME_TEXT
 
 if TYPE_CHECKING:
@@ -195,7 +195,11 @@ def facts_text(facts: Mapping[str, object], *, indent: str = "  ") -> str:
     wide = max(map(len, names), default=0)
     lines = []
     for name, ((_, unit), value) in zip(names, rows, strict=True):
-        number = isinstance(value, int | float) and not isinstance(value, bool)
-        shown = format_quantity(float(value), unit) if number else shorten(value, WIDTH - wide - 4)  # type: ignore[arg-type]
+        if value is None:
+            shown = MISSING
+        elif isinstance(value, int | float) and not isinstance(value, bool):
+            shown = format_quantity(float(value), unit)
+        else:
+            shown = shorten(value, WIDTH - wide - 4)
         lines.append(f"{indent}{name.ljust(wide)}  {shown}")
     return "\n".join(lines)

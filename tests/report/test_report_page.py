@@ -186,7 +186,8 @@ def test_the_rooms_public_names() -> None:
     assert set(room.__all__) == {
         *("Model", "Page", "Picture", "Section", "Sheet", "render"),
         *("figure_air", "figure_coefficients", "figure_heating", "figure_map", "figure_strips"),
-        *("footer_text", "png", "svg", "why_no_heating"),
+        *("footer_text", "png", "save_figure", "svg", "why_no_heating"),
+        *("air_text", "condition_text", "crossings_text", "segments_text"),
         *("SEGMENT_COLUMNS", "facts_text", "table_text", "terminal_tables"),
         *("format_number", "format_quantity", "percent"),
     }
