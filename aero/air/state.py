@@ -92,6 +92,10 @@ class Atmosphere(Protocol):
         """Altitudes at which the model's own formulas leave a step [m]."""
 
     @property
+    def altitude_range(self) -> tuple[float, float]:
+        """Lowest and highest altitude it answers for [m]."""
+
+    @property
     def description(self) -> str:
         """One sentence for people: model, activity or indices, and the published source."""
 
@@ -105,8 +109,15 @@ class Atmosphere(Protocol):
     ) -> Air:
         """Return the air at each point."""
 
-    def uncertainty(self, altitude_m: ArrayLike) -> tuple[Floats, Floats]:
+    def uncertainty(
+        self, altitude_m: ArrayLike, *, utc: Times | np.datetime64 | None = None
+    ) -> tuple[Floats, Floats]:
         """Return the relative 1-sigma density uncertainty as (bias, scatter)."""
+
+    def notes(
+        self, altitude_m: ArrayLike | None = None, utc: Times | np.datetime64 | None = None
+    ) -> tuple[str, ...]:
+        """Return what a reader should know about this model at these points."""
 
     def provenance(self) -> dict[str, object]:
         """Return what is needed to make this atmosphere again, as plain JSON values."""

@@ -9,7 +9,7 @@ import click
 import numpy as np
 
 from aero.cli import options as shared
-from aero.cli.point import _missing
+from aero.cli.point import missing_of
 from aero.cli.show import print_csv, print_json, say
 from aero.errors import InputError
 
@@ -29,7 +29,7 @@ MOST_ROWS = 1_000_000
     show_default=True,
     help="Definition of the mean free path.",
 )
-@click.option("--figure", type=click.Path(), metavar="FILE", help="Draw it as .svg, .png or .pdf.")
+@click.option("--figure", type=click.Path(), metavar="FILE", help="Draw it as .svg or .png.")
 @shared.replace_option
 @shared.format_option("table", "json", "csv")
 def command(**options: Any) -> None:
@@ -38,7 +38,7 @@ def command(**options: Any) -> None:
 
     altitude = altitudes(options["start"], options["stop"], options["step"])
     air_model, why = shared.choose_atmosphere(
-        missing=_missing(options),
+        missing=missing_of(options),
         **{k: options[k] for k in ("atmosphere", "activity", "f107", "f107a", "ap", "space_weather")},
     )
     columns = profile(
@@ -58,7 +58,7 @@ def command(**options: Any) -> None:
     elif style == "csv":
         print_csv(list(columns), list(zip(*columns.values(), strict=True)))
     else:
-        from aero.report.condition import air_text
+        from aero.cli.text import air_text
 
         say(f"Air: {air_model.description}, {why}; mean free path {options['free_path']}.")
         say(air_text(columns))
@@ -92,15 +92,18 @@ def _draw(options: dict[str, Any], columns: dict[str, np.ndarray], footer: str) 
     from aero.survey.output import check_target, whole
 
     target = Path(options["figure"])
-    if target.suffix.lower() not in {".svg", ".png", ".pdf"}:
+    if target.suffix.lower() not in {".svg", ".png"}:
         raise InputError(
-            f"'{target.suffix}' is not a figure format", source=str(target), remedy="end the name in .svg, .png or .pdf"
+            f"'{target.suffix}' is not a figure format", source=str(target), remedy="end the name in .svg or .png"
         )
     check_target(target, replace=options["replace"], folder=False)
     import pandas as pd
 
-    from aero.report import figure_air, save_figure
+    from aero.report import figure_air, png, svg
 
-    figure = figure_air(pd.DataFrame(columns), footer=footer)
+    figure = figure_air(pd.DataFrame(columns), footer=footer, title="The atmosphere")
     with whole(target, replace=options["replace"], folder=False) as new:
-        save_figure(figure, new, target.suffix.lower().lstrip("."))
+        if target.suffix.lower() == ".svg":
+            new.write_text(svg(figure), encoding="utf-8")
+        else:
+            new.write_bytes(png(figure))

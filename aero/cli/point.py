@@ -52,7 +52,7 @@ def command(**options: Any) -> None:
         raise InputError(
             "no length is given", source="aero point", remedy="give --length 1m, --vehicle FILE or --shape sphere"
         )
-    missing = _missing(options)
+    missing = missing_of(options)
     air_model, why = shared.choose_atmosphere(
         missing=missing, **{k: options[k] for k in ("atmosphere", "activity", "f107", "f107a", "ap", "space_weather")}
     )
@@ -75,7 +75,7 @@ def command(**options: Any) -> None:
         rows = list(flatten(answer))
         print_csv([name for name, _ in rows], [[value for _, value in rows]])
     else:
-        from aero.report.condition import condition_text
+        from aero.cli.text import condition_text
 
         say(f"Air: {air_model.description}, {why}.")
         say(condition_text(answer))
@@ -86,7 +86,7 @@ def command(**options: Any) -> None:
         say(CAUTION, style=style)
 
 
-def _missing(options: dict[str, Any]) -> str | None:
+def missing_of(options: dict[str, Any]) -> str | None:
     place = options["latitude"] is not None and options["longitude"] is not None
     if place and options["date"] is not None:
         return None

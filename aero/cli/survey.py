@@ -131,7 +131,7 @@ def show(result: Any, files: list[str], why: str, options: dict[str, Any]) -> No
     elif style == "csv":
         print_csv(list(result.segments.columns), result.segments.to_numpy().tolist())
     else:
-        from aero.report.text import crossings_text, segments_text
+        from aero.cli.text import crossings_text, segments_text
 
         say(f"\n{result.summary}\n")
         if not result.segments.empty:

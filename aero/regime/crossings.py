@@ -8,7 +8,7 @@ from dataclasses import dataclass
 import numpy as np
 
 from aero.air.state import Air, Atmosphere
-from aero.arrays import Floats
+from aero.arrays import Floats, Times
 from aero.gas import mean_free_path
 from aero.regime.track import Track
 
@@ -51,7 +51,7 @@ def find_crossings(
     sampled_path: Floats,
     lengths: Sequence[float],
     bounds: Sequence[float],
-    log_uncertainty: Callable[[Air], Floats],
+    log_uncertainty: Callable[[Air, Times | None], Floats],
     altitude_range: tuple[float, float],
 ) -> Crossings:
     """Find every crossing of every bound by every length's Knudsen number.
@@ -67,7 +67,7 @@ def find_crossings(
     lengths : sequence of float [m]
     bounds : sequence of three floats
     log_uncertainty : callable
-        Air -> 1-sigma of the logarithm of the mean free path at each point.
+        (Air, UTC or None) -> 1-sigma of the logarithm of the mean free path at each point.
     altitude_range : (float, float) [m]
         Range the atmosphere answers in.
 
@@ -94,7 +94,7 @@ def find_crossings(
     time = _bisect(path, track.altitude.time[start], track.altitude.time[start + 1], target, ~rarefying)
     altitude = track.altitude(time)
     place = track.place(time)
-    spread = 1.96 * log_uncertainty(atmosphere.at(altitude, **place))
+    spread = 1.96 * log_uncertainty(atmosphere.at(altitude, **place), place.get("utc"))
 
     def vertical(height: Floats) -> Floats:
         return mean_free_path(atmosphere.at(height, **place), free_path)

@@ -17,7 +17,7 @@ if TYPE_CHECKING:
     from rich.text import Text
 
 WIDTH = 100  # columns
-_LONGEST = 44  # characters of one word cell; longer ones are cut in the middle
+_LONGEST = 50  # characters of one word cell; longer ones are cut in the middle
 _HEADER = 11  # columns after which a header goes on in the next line
 _GAP = 2  # columns between two columns
 

@@ -103,7 +103,7 @@ def conditions(
     shown = path if settings.free_path == "hard-sphere" else mean_free_path(air, settings.free_path)
     columns["mean_free_path_m"] = shown
     _flow_columns(columns, moving)
-    density_uncertainty = atmosphere.uncertainty(air.altitude)
+    density_uncertainty = atmosphere.uncertainty(air.altitude, utc=inputs.utc)
     if vehicle is None:
         wall = np.full_like(air.altitude, settings.wall if isinstance(settings.wall, float) else BARE_WALL)
         accommodated: Floats | float = BARE_ACCOMMODATION
@@ -235,6 +235,7 @@ def _vehicle_columns(
         cross_section=free_path_uncertainty(air),
         accommodation=spread,
         wall_temperature=wall,
+        energy_accommodation=accommodated,
         fraction=fraction,
     )
     moves = moving.speed > 0.0

@@ -39,7 +39,7 @@ def survey_notes(
         notes.append(f"{count} bad row{'s were' if count > 1 else ' was'} skipped; skipped.csv lists each with its reason.")
     if trajectory.time is None:
         notes.append("No time column: points were surveyed one by one, without crossings, segments or loads.")
-    notes += _common(vehicle, atmosphere, settings, trajectory.altitude, trajectory.speed, columns)
+    notes += _common(vehicle, atmosphere, settings, trajectory.altitude, trajectory.speed, columns, trajectory.utc)
     return tuple(notes)
 
 
@@ -50,10 +50,12 @@ def point_notes(
     row: Mapping[str, float],
     altitude: float,
     speed: float,
+    date: np.datetime64 | None,
 ) -> tuple[str, ...]:
     """Return the notes of a single condition."""
     columns = {name: np.array([value]) for name, value in row.items()}
-    notes = _common(vehicle, atmosphere, settings, np.array([altitude]), np.array([speed]), columns)
+    utc = None if date is None else np.array([date])
+    notes = _common(vehicle, atmosphere, settings, np.array([altitude]), np.array([speed]), columns, utc)
     if vehicle is None:
         notes.append("Emitted Knudsen numbers are for a 300 K wall with full accommodation, unless one is given.")
     if speed == 0.0:
@@ -68,6 +70,7 @@ def _common(
     altitude: np.ndarray,
     speed: np.ndarray,
     columns: Mapping[str, np.ndarray],
+    utc: np.ndarray | None,
 ) -> list[str]:
     notes = []
     if settings.free_path != "hard-sphere":
@@ -75,12 +78,8 @@ def _common(
             f"Mean free paths, Knudsen numbers and tags use the {settings.free_path} definition; bridges are "
             "evaluated in the hard-sphere definition they were fitted in, so drag and heating do not move."
         )
-    if atmosphere.name == "standard-1976":
-        notes.append(
-            "The 1976 standard is a mean mid-latitude atmosphere, not the air of a day; the band holds how far it "
-            "usually lies from it."
-        )
-    elif altitude.size and float(np.max(altitude)) > ACTIVE_FROM:
+    notes += atmosphere.notes(altitude, utc)
+    if atmosphere.needs_place and altitude.size and float(np.max(altitude)) > ACTIVE_FROM:
         notes.append("Winds of 100-200 m/s in the thermosphere are not modelled; they change drag by 2-5 % (judgement).")
     if vehicle is not None:
         notes += _vehicle(vehicle, speed, altitude, columns)

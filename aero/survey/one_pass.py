@@ -13,6 +13,7 @@ from aero.air import Msis, StandardAtmosphere1976
 from aero.air.state import Air, Atmosphere
 from aero.arrays import Floats, Times
 from aero.body import Vehicle
+from aero.errors import InputError
 from aero.gas import free_path_uncertainty
 from aero.regime import REGIMES, Crossings, Cuts, Track, cut_segments, find_crossings
 from aero.regime.track import Cubic, clock
@@ -28,7 +29,6 @@ if TYPE_CHECKING:
     from pathlib import Path
 
 BLOCK = 16_384  # rows a pass: the working arrays stay in the second-level cache
-ALTITUDE_RANGE = (-5e3, 1000e3)  # m, what a trajectory may hold
 Progress = Callable[[int], None]
 
 
@@ -136,6 +136,7 @@ def survey(
     """
     air_model = atmosphere or default_atmosphere(trajectory)
     chosen = settings or Settings()
+    check_reach(trajectory, air_model)
     lengths = named_lengths(vehicle)
     columns = _points(trajectory, vehicle, air_model, chosen, lengths, progress)
     track = Track.along(trajectory) if trajectory.time is not None else None
@@ -149,8 +150,8 @@ def survey(
             columns["mean_free_path_m"],
             list(lengths.values()),
             chosen.bounds,
-            lambda air: path_uncertainty(air_model, air),
-            _reach(trajectory),
+            lambda air, utc: path_uncertainty(air_model, air, utc),
+            air_model.altitude_range,
         )
         crossings = _crossing_table(found, list(lengths), chosen.bounds)
         segments = _segment_table(trajectory, vehicle, air_model, chosen, lengths, columns, track, found)
@@ -159,16 +160,36 @@ def survey(
     return Survey(trajectory, vehicle, air_model, chosen, points, segments, crossings, notes)
 
 
-def path_uncertainty(atmosphere: Atmosphere, air: Air) -> Floats:
+def path_uncertainty(atmosphere: Atmosphere, air: Air, utc: Times | None) -> Floats:
     """Return the 1-sigma of the logarithm of the mean free path: density and cross-sections together."""
-    bias, scatter = atmosphere.uncertainty(air.altitude)
+    bias, scatter = atmosphere.uncertainty(air.altitude, utc=utc)
     cross_section = free_path_uncertainty(air)
     return np.sqrt(bias * bias + scatter * scatter + cross_section * cross_section)
 
 
-def _reach(trajectory: Trajectory) -> tuple[float, float]:
-    # The vertical search of the uncertainty may look past the flight, within what every model answers.
-    return max(ALTITUDE_RANGE[0], min(0.0, float(trajectory.altitude.min()))), ALTITUDE_RANGE[1]
+def check_reach(trajectory: Trajectory, atmosphere: Atmosphere) -> None:
+    """Raise an InputError where the flight leaves the altitudes an atmosphere answers for, or lacks its place."""
+    low, high = atmosphere.altitude_range
+    outside = np.flatnonzero((trajectory.altitude < low) | (trajectory.altitude > high))
+    source = trajectory.source or trajectory.name
+    if outside.size:
+        first = int(outside[0])
+        raise InputError(
+            f"{outside.size} of {len(trajectory)} points lie outside the {low / 1e3:g} to {high / 1e3:g} km of "
+            f"{atmosphere.name} (first: point {first + 1} at {trajectory.altitude[first] / 1e3:g} km)",
+            source=source,
+            remedy="choose another --atmosphere or leave those points out",
+        )
+    if not atmosphere.needs_place:
+        return
+    missing = [n for n in ("latitude", "longitude") if getattr(trajectory, n) is None]
+    missing += ["date"] if trajectory.utc is None else []
+    if missing:
+        raise InputError(
+            f"has no {' and no '.join(missing)}, which {atmosphere.name} needs",
+            source=source,
+            remedy="state them in the file or by option, or choose standard-1976",
+        )
 
 
 def block_inputs(trajectory: Trajectory, rows: slice, utc: Times | None) -> Inputs:
@@ -198,6 +219,7 @@ def _points(
 ) -> dict[str, np.ndarray]:
     """Return all computed columns, filled block by block into arrays made once."""
     count = trajectory.altitude.size
+    _warm_heap()
     kept = {column.name for column in point_columns(list(lengths))}
     utc = trajectory.utc if atmosphere.needs_place else None
     columns: dict[str, np.ndarray] = {}
@@ -213,6 +235,15 @@ def _points(
     if trajectory.time is not None:
         columns["heat_load_J_m2"] = Load.of(trajectory.time, columns["heat_flux_W_m2"]).samples
     return columns
+
+
+def _warm_heap() -> None:
+    """Let the C library keep freed blocks of this size instead of returning them to the system at once.
+
+    Freeing one large array raises glibc's own threshold for that; the chain's temporaries then reuse pages,
+    which halves its time. Elsewhere it does nothing.
+    """
+    np.empty(31 << 20, dtype=np.uint8)
 
 
 def _frame(columns: dict[str, np.ndarray], trajectory: Trajectory, lengths: dict[str, float]) -> pd.DataFrame:

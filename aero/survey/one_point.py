@@ -90,7 +90,7 @@ def point(
     if vehicle is not None:
         answer["drag"] = _drag(row)
         answer["heating"] = _heating(row, speed)
-    answer["notes"] = list(point_notes(vehicle, air_model, chosen, row, altitude, speed))
+    answer["notes"] = list(point_notes(vehicle, air_model, chosen, row, altitude, speed, date))
     return answer
 
 
