@@ -18,8 +18,8 @@ from aero.units import split_header
 
 _OF_FORCE = ("centre", "width", "centre_sigma", "width_sigma", "continuum_sigma", "continuum_above")
 BRIDGED: dict[str, tuple[tuple[str, ...], tuple[str, ...]]] = {
-    "drag": (("function", "similarity"), _OF_FORCE),
-    "lift": (("function", "similarity"), _OF_FORCE),
+    "drag": (("function", "variable"), _OF_FORCE),
+    "lift": (("function", "variable"), _OF_FORCE),
     "heating": ((), ("exponent", "sigma")),
 }
 """Coefficient that [bridging] may override -> (keys of text, keys of numbers)."""

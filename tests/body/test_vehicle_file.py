@@ -278,3 +278,14 @@ def test_shapes_from_options_name_the_option():
     with pytest.raises(InputError, match=r"diameter is -1, expected a positive number"):
         build_shape("sphere", {"diameter": -1.0}, source="--shape")
     assert np.isfinite(build_shape("sphere", {"diameter": 1.0}).frontal_area)
+
+
+def test_every_override_the_file_takes_is_one_the_bridges_take(write):
+    from aero.bridge import bridge_for
+
+    text = GOOD.split("[bridging.drag]")[0]
+    text += '[bridging.drag]\nfunction = "erf-log"\nvariable = "knudsen"\ncentre = 0.2\nwidth = 2.0\n'
+    text += "centre_sigma = 0.2\nwidth_sigma = 0.3\ncontinuum_sigma = 0.02\ncontinuum_above = 0\n"
+    vehicle = read_vehicle(write(text + "[bridging.heating]\nexponent = 3\nsigma = 0.1\n"))
+    assert bridge_for(vehicle, "drag").centre == 0.2
+    assert bridge_for(vehicle, "heating").exponent == 3.0
