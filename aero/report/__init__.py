@@ -12,8 +12,6 @@ if TYPE_CHECKING:
     from aero.report.air import figure_air as figure_air
     from aero.report.coefficients import figure_coefficients as figure_coefficients
     from aero.report.columns import SEGMENT_COLUMNS as SEGMENT_COLUMNS
-    from aero.report.condition import air_text as air_text
-    from aero.report.condition import condition_text as condition_text
     from aero.report.heating import figure_heating as figure_heating
     from aero.report.heating import why_no_heating as why_no_heating
     from aero.report.map import figure_map as figure_map
@@ -34,8 +32,6 @@ if TYPE_CHECKING:
     from aero.report.table import facts_text as facts_text
     from aero.report.table import table_text as table_text
     from aero.report.table import terminal_tables as terminal_tables
-    from aero.report.text import crossings_text as crossings_text
-    from aero.report.text import segments_text as segments_text
 
 _HOMES = {
     "SEGMENT_COLUMNS": "columns",
@@ -44,9 +40,6 @@ _HOMES = {
     "Picture": "page",
     "Section": "page",
     "Sheet": "page",
-    "air_text": "condition",
-    "condition_text": "condition",
-    "crossings_text": "text",
     "facts_text": "table",
     "figure_air": "air",
     "figure_coefficients": "coefficients",
@@ -60,7 +53,6 @@ _HOMES = {
     "png": "style",
     "render": "page",
     "save_figure": "style",
-    "segments_text": "text",
     "svg": "style",
     "table_text": "table",
     "terminal_tables": "table",

@@ -28,6 +28,7 @@ PREFIXES: dict[str, tuple[tuple[float, str, float], ...]] = {
 
 # suffix of a column name -> unit; longer ones first
 SUFFIXES = {
+    "_per_m": "1/m",
     "_kg_mol": "kg/mol",
     "_kg_m3": "kg/m³",
     "_kg_m2": "kg/m²",

@@ -5,6 +5,7 @@ from __future__ import annotations
 import re
 from collections.abc import Callable
 from itertools import pairwise
+from pathlib import Path
 from types import SimpleNamespace
 from xml.etree import ElementTree
 
@@ -24,6 +25,7 @@ from aero.report import (
     figure_strips,
     footer_text,
     png,
+    save_figure,
     svg,
     why_no_heating,
 )
@@ -447,3 +449,17 @@ def test_an_unknown_size_is_refused(capsule: SimpleNamespace) -> None:
         figure_map(capsule.points, bounds=capsule.bounds, size="poster")
     with pytest.raises(ValueError, match="three positive rising"):
         figure_map(capsule.points, bounds=(0.1, 0.01, 10))
+
+
+@pytest.mark.parametrize(("kind", "head"), [("svg", b"<?xml"), ("png", b"\x89PNG"), ("pdf", b"%PDF")])
+def test_figures_are_written_in_each_format_twice_alike(
+    kind: str, head: bytes, tmp_path: Path, capsule: SimpleNamespace
+) -> None:
+    for name in ("one", "two"):
+        save_figure(figure_air(capsule.points), tmp_path / f"{name}.{kind}")
+    save_figure(figure_air(capsule.points), tmp_path / "three.tmp", kind)
+    one, two, three = (path.read_bytes() for path in sorted(tmp_path.iterdir()))
+    assert one == two == three
+    assert one.startswith(head)
+    with pytest.raises(ValueError, match="figure format is 'gif', expected one of: svg, png, pdf"):
+        save_figure(figure_air(capsule.points), tmp_path / "a.gif")

@@ -46,7 +46,7 @@ def test_units_are_read_off_the_contracts_column_names() -> None:
         "drag_deceleration_m_s2": "m/s²", "ballistic_coefficient_kg_m2": "kg/m²", "viscosity_Pa_s": "Pa s",
         "molar_mass_kg_mol": "kg/mol", "number_density_m3": "1/m³", "density_kg_m3": "kg/m³", "time_s": "s",
         "latitude_deg": "°", "temperature_K": "K", "pressure_Pa": "Pa", "mach": "", "regime.arm_m": "",
-        "heat_load_share": "share", "input.flag_s": "",
+        "heat_load_share": "share", "reynolds_per_m": "1/m", "input.flag_s": "",
     }  # fmt: skip
     assert {name: split_unit(name)[1] for name in named} == named
 

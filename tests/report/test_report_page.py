@@ -187,7 +187,6 @@ def test_the_rooms_public_names() -> None:
         *("Model", "Page", "Picture", "Section", "Sheet", "render"),
         *("figure_air", "figure_coefficients", "figure_heating", "figure_map", "figure_strips"),
         *("footer_text", "png", "save_figure", "svg", "why_no_heating"),
-        *("air_text", "condition_text", "crossings_text", "segments_text"),
         *("SEGMENT_COLUMNS", "facts_text", "table_text", "terminal_tables"),
         *("format_number", "format_quantity", "percent"),
     }

@@ -110,3 +110,13 @@ def test_tables_need_neither_pandas_nor_matplotlib_nor_templates() -> None:
     )
     done = subprocess.run([sys.executable, "-c", code], capture_output=True, text=True, check=False)
     assert done.returncode == 0, done.stderr
+
+
+def test_a_profile_keeps_its_decades_apart() -> None:
+    height = np.arange(0.0, 200e3, 20e3)
+    table = {"altitude_m": height, "density_kg_m3": 1.225 * np.exp(-height / 7e3), "n_He_m3": height}
+    rows = table_text(table, columns=["altitude_m", "density_kg_m3"]).split("\n")[2:]
+    assert len(rows) == height.size
+    shown = np.array([[float(word) for word in row.split()] for row in rows])
+    np.testing.assert_allclose(shown[:, 0], height / 1e3)
+    np.testing.assert_allclose(shown[:, 1], table["density_kg_m3"], rtol=5e-4)  # four digits shown
