@@ -9,6 +9,7 @@ from aero.body.flat_bodies import Box, FlatPlate
 from aero.body.round_bodies import Cone, Cylinder, Sphere, SphereCone
 from aero.body.shape import BODY_CLASSES, Shape
 from aero.errors import InputError, choose
+from aero.units import quantity
 
 __all__ = [
     "BODY_CLASSES",
@@ -43,7 +44,7 @@ def dimensions(kind: type[Shape]) -> dict[str, str]:
 
 def build_shape(
     kind: str,
-    sizes: Mapping[str, float],
+    sizes: Mapping[str, float | str],
     *,
     source: str | None = None,
     flags: Mapping[str, str] | None = None,
@@ -54,7 +55,7 @@ def build_shape(
     ----------
     kind : str
         A key of `SHAPES`.
-    sizes : mapping of str to float [m], [rad]
+    sizes : mapping of str to float [m], [rad] or text with a unit
     source : str, optional
         Where they stand, for the message.
     flags : mapping of str to str, optional
@@ -69,6 +70,8 @@ def build_shape(
     --------
     >>> build_shape("sphere", {"diameter": 1.0})
     Sphere(diameter=1.0)
+    >>> build_shape("sphere", {"diameter": "20 cm"})
+    Sphere(diameter=0.2)
     >>> build_shape("cone", {"diameter": 1.0})
     Traceback (most recent call last):
     aero.errors.InputError: a cone has no diameter; its dimensions: half_angle, base_radius.
@@ -83,7 +86,11 @@ def build_shape(
     missing = [called[name] for name in wanted if name not in sizes]
     if missing:
         raise InputError(f"a {kind} needs {' and '.join(missing)}", source=source, remedy=f"add {missing[0]}")
+    values = {
+        name: quantity(size, wanted[name], source=called[name]) if isinstance(size, str) else size
+        for name, size in sizes.items()
+    }
     try:
-        return built(**sizes)
+        return built(**values)
     except ValueError as error:
         raise InputError(f"the {kind} cannot be built: {error}", source=source, remedy=listed) from None

@@ -277,7 +277,9 @@ def test_shapes_from_options_name_the_option():
         build_shape("spere", {"diameter": 1.0}, source="--shape")
     with pytest.raises(InputError, match=r"diameter is -1, expected a positive number"):
         build_shape("sphere", {"diameter": -1.0}, source="--shape")
-    assert np.isfinite(build_shape("sphere", {"diameter": 1.0}).frontal_area)
+    with pytest.raises(InputError, match=r"--diameter: '1' has no unit, expected a length"):
+        build_shape("sphere", {"diameter": "1"}, source="--shape", flags=flags)
+    assert build_shape("sphere", {"diameter": "1 m"}).frontal_area == pytest.approx(np.pi / 4)
 
 
 def test_every_override_the_file_takes_is_one_the_bridges_take(write):
