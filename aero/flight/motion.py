@@ -6,14 +6,14 @@ Gravity, rotation, air and drag are arguments, so that closed-form cases run thr
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
 from typing import Any, Protocol
 
 import numpy as np
 
 from aero.air.state import Air
-from aero.arrays import ArrayLike, Floats, floats
+from aero.arrays import Floats, floats
 from aero.errors import InputError
+from aero.flight.path import Path, states
 from aero.flight.planet import Planet, apogee_height
 
 MODEL_TOP = 1000e3  # m: the standard of 1976 ends here; above it the flight is taken to be in a vacuum
@@ -21,8 +21,6 @@ CEILING = 200e3  # m: below it a climbing flight is not yet "leaving" (judgement
 DAY = 86400.0  # s: a flight that neither lands nor leaves is stopped here unless `until` says otherwise
 VERTICAL = 0.02  # cosine of the flight-path angle, 1.1 degrees, under which lift fades (judgement)
 LONGEST_STEP = 30.0  # s: no pass through the air, about 200 s and more at orbital speed, is stepped over
-
-_GAUSS_NODES, _GAUSS_WEIGHTS = np.polynomial.legendre.leggauss(6)
 
 
 class AirAlong(Protocol):
@@ -37,194 +35,6 @@ class AreaPerMass(Protocol):
 
     def __call__(self, air: Air, speed: Floats) -> tuple[Floats, Floats]:
         """Return C_D A/m and C_L A/m [m2/kg] at each point; lift positive upwards."""
-
-
-@dataclass(frozen=True, eq=False)
-class States:
-    """Where a flight is at given times, and how it moves over the planet and through the air.
-
-    Attributes
-    ----------
-    time : (n,) array [s]
-    altitude : (n,) array [m]
-        Over the ellipsoid.
-    latitude, longitude : (n,) array [rad]
-        Geodetic.
-    speed : (n,) array [m/s]
-        Relative to the air, which turns with the planet.
-    flight_path_angle : (n,) array [rad]
-        Of that velocity over the geodetic horizontal; negative down.
-    heading : (n,) array [rad]
-        Of that velocity, from north through east, 0 to 2 pi.
-    position, velocity : (n, 3) array [m], [m/s]
-        Fixed to the turning planet.
-    """
-
-    time: Floats
-    altitude: Floats
-    latitude: Floats
-    longitude: Floats
-    speed: Floats
-    flight_path_angle: Floats
-    heading: Floats
-    position: Floats
-    velocity: Floats
-
-
-@dataclass(frozen=True, eq=False)
-class Path:
-    """A flown path: known at every time between its ends.
-
-    Attributes
-    ----------
-    planet : Planet
-    nodes : (m,) array [s]
-        Ends of the integrator's steps, from 0 to the end of the flight.
-    dense : callable
-        Times (n,) [s] -> state (6, n).
-    ended_by : str
-        "ground", "left the atmosphere", "until" or "time limit".
-    """
-
-    planet: Planet
-    nodes: Floats
-    dense: Callable[[Floats], Floats]
-    ended_by: str
-
-    @property
-    def duration(self) -> float:
-        """Time of the end of the flight [s]."""
-        return float(self.nodes[-1])
-
-    def at(self, time: ArrayLike) -> States:
-        """Return the states at the given times (n,) [s]."""
-        when = np.atleast_1d(floats(time))
-        state = self.dense(when)
-        return states(self.planet, when, state[:3].T, state[3:].T)
-
-    def peak(self, function: Callable[[States], Floats]) -> tuple[float, float]:
-        """Return time and value of the largest value along the whole path, not only at samples.
-
-        Parameters
-        ----------
-        function : callable
-            States -> values (n,). NaN counts as no value.
-
-        Returns
-        -------
-        time : float [s]
-            To 1e-6 s or to rounding; NaN if there is no value anywhere.
-        value : float
-
-        Notes
-        -----
-        Eight points in each integration step bracket the peak; the bracket is then narrowed sixteenfold a
-        round.
-        """
-        shares = np.linspace(0.0, 1.0, 8, endpoint=False)
-        times = np.append((self.nodes[:-1, None] + np.diff(self.nodes)[:, None] * shares).ravel(), self.nodes[-1])
-        values = function(self.at(times))
-        if np.all(np.isnan(values)):
-            return float("nan"), float("nan")
-        while True:
-            best = int(np.nanargmax(values))
-            low, high = times[max(best - 1, 0)], times[min(best + 1, times.size - 1)]
-            if high - low <= max(1e-6, 1e-14 * high):
-                return float(times[best]), float(values[best])
-            times = np.union1d(np.linspace(low, high, 33), times[best])
-            values = function(self.at(times))
-
-    def integral(self, function: Callable[[States], Floats]) -> float:
-        """Return the integral over time of a function of the states, by Gauss's rule in each step.
-
-        Parameters
-        ----------
-        function : callable
-            States -> values (n,).
-
-        Returns
-        -------
-        float
-            In the function's unit times seconds.
-        """
-        half = 0.5 * np.diff(self.nodes)
-        middle = 0.5 * (self.nodes[:-1] + self.nodes[1:])
-        times = (middle[:, None] + half[:, None] * _GAUSS_NODES).ravel()
-        values = function(self.at(times)).reshape(half.size, -1)
-        return float(np.sum(half * np.sum(values * _GAUSS_WEIGHTS, axis=-1)))
-
-
-def states(planet: Planet, time: Floats, position: Floats, velocity: Floats) -> States:
-    """Return positions and velocities as altitude, speed and angles.
-
-    Parameters
-    ----------
-    planet : Planet
-    time : (n,) array [s]
-    position, velocity : (n, 3) array [m], [m/s]
-        Fixed to the turning planet.
-
-    Returns
-    -------
-    States
-        Flight-path angle and heading of a vehicle at rest are 0.
-    """
-    latitude, longitude, altitude = planet.place(position)
-    east, north, up = (np.sum(velocity * axis, axis=-1) for axis in planet.axes(latitude, longitude))
-    level = np.hypot(east, north)
-    return States(
-        time=time,
-        altitude=altitude,
-        latitude=latitude,
-        longitude=longitude,
-        speed=np.hypot(level, up),
-        flight_path_angle=np.arctan2(up, level),
-        heading=np.arctan2(east, north) % (2.0 * np.pi),
-        position=position,
-        velocity=velocity,
-    )
-
-
-def velocity_over_planet(
-    planet: Planet, position: Floats, speed: float, flight_path_angle: float, heading: float
-) -> Floats:
-    """Return the velocity (3,) [m/s] with the given speed and angles at a position (3,)."""
-    latitude, longitude, _ = planet.place(position)
-    east, north, up = planet.axes(latitude, longitude)
-    level = speed * np.cos(flight_path_angle)
-    return floats(
-        level * np.sin(heading) * east + level * np.cos(heading) * north + speed * np.sin(flight_path_angle) * up
-    )
-
-
-def frame_velocity(planet: Planet, position: Floats) -> Floats:
-    """Return the velocity omega x r (..., 3) [m/s] of the turning frame, and of the air, at a position."""
-    result = np.zeros_like(position)
-    result[..., 0] = -planet.rotation * position[..., 1]
-    result[..., 1] = planet.rotation * position[..., 0]
-    return result
-
-
-def mechanical_energy(planet: Planet, position: Floats, velocity: Floats) -> Floats:
-    """Return the energy per mass that only drag changes, in the turning frame.
-
-    Parameters
-    ----------
-    planet : Planet
-    position, velocity : (..., 3) array [m], [m/s]
-
-    Returns
-    -------
-    (...,) array [J/kg]
-
-    Notes
-    -----
-    E = V^2/2 + Phi - omega^2 (x^2 + y^2)/2, Jacobi's integral: the Coriolis force and lift do no work, so
-    dE/dt = -D V/m with V relative to the air.
-    """
-    square = np.sum(velocity * velocity, axis=-1)
-    across = position[..., 0] ** 2 + position[..., 1] ** 2
-    return floats(0.5 * square + planet.potential(position) - 0.5 * planet.rotation**2 * across)
 
 
 def integrate(
@@ -252,7 +62,7 @@ def integrate(
     until : float, optional [s]
         Time at which the flight ends at the latest; one day when None.
     tolerance : float
-        Relative tolerance a step; positions also to `tolerance` metres, velocities to a thousandth of it.
+        Relative tolerance a step; velocities also to `tolerance` times 1 km/s.
 
     Returns
     -------
@@ -284,13 +94,16 @@ def integrate(
         np.concatenate([position, velocity]),
         method="DOP853",
         rtol=tolerance,
-        atol=np.repeat([tolerance, 1e-3 * tolerance], 3),
+        atol=np.repeat([tolerance, 1e3 * tolerance], 3),
         max_step=LONGEST_STEP,
         dense_output=True,
         events=_events(planet, position, velocity),
     )
     if solution.status < 0:
-        raise InputError(f"the flight cannot be integrated beyond {solution.t[-1]:.6g} s ({solution.message})")
+        reached = f"{solution.t[-1]:.6g} s"
+        raise InputError(f"the flight cannot be integrated beyond {reached} ({solution.message})")
+    assert solution.sol is not None
+    assert solution.t_events is not None
     if solution.status == 1:
         ended_by = "ground" if solution.t_events[0].size else "left the atmosphere"
     else:
@@ -323,7 +136,9 @@ def _equations(
         if altitude > MODEL_TOP or speed == 0.0:
             return np.zeros(3)
         # trial steps reach under the ground before the event is found; they only need some finite air
-        around = air(floats([time]), floats([max(altitude, 0.0)]), floats([latitude]), floats([longitude]))
+        around = air(
+            floats([time]), floats([max(float(altitude), 0.0)]), floats([latitude]), floats([longitude])
+        )
         drag, lift = (float(part[0]) for part in area_per_mass(around, floats([speed])))
         pressure = 0.5 * float(around.density[0]) * speed * speed
         if not np.isfinite(pressure * (drag + lift)):
@@ -358,10 +173,10 @@ def _events(planet: Planet, position: Floats, velocity: Floats) -> list[Any]:
     if start.altitude[0] > CEILING and start.flight_path_angle[0] > 0.0:
         ceiling = MODEL_TOP
 
-    def ground(time: float, state: Floats) -> float:
+    def ground(time: float, state: Floats) -> float:  # noqa: ARG001 - the solver's signature
         return float(planet.place(state[:3])[2])
 
-    def left(time: float, state: Floats) -> float:
+    def left(time: float, state: Floats) -> float:  # noqa: ARG001
         altitude = float(planet.place(state[:3])[2])
         above = min(altitude - ceiling, apogee_height(state[:3], state[3:], planet) - MODEL_TOP)
         return max(above, altitude - MODEL_TOP)

@@ -4,6 +4,7 @@ from __future__ import annotations
 
 import math
 from collections.abc import Callable
+from dataclasses import replace
 
 import numpy as np
 import pytest
@@ -12,15 +13,8 @@ from aero.air.state import Air
 from aero.constants import EARTH_GM, EARTH_J2, EARTH_RADIUS, EARTH_ROTATION
 from aero.errors import InputError
 from aero.flight.forces import constant
-from aero.flight.motion import (
-    MODEL_TOP,
-    Path,
-    States,
-    frame_velocity,
-    integrate,
-    mechanical_energy,
-    velocity_over_planet,
-)
+from aero.flight.motion import MODEL_TOP, integrate
+from aero.flight.path import Path, States, frame_velocity, mechanical_energy, velocity_over_planet
 from aero.flight.planet import Planet, earth
 
 SEA_LEVEL, SCALE_HEIGHT = 1.225, 7000.0
@@ -38,15 +32,24 @@ def exponential(density: float = SEA_LEVEL, scale: float = SCALE_HEIGHT) -> Call
 
 
 def lifting(ballistic: float, lift_to_drag: float) -> Callable[..., tuple[np.ndarray, np.ndarray]]:
-    return lambda air, speed: (
-        np.full(speed.shape, 1.0 / ballistic),
-        np.full(speed.shape, lift_to_drag / ballistic),
-    )
+    def area_per_mass(air: Air, speed: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+        return np.full(speed.shape, 1.0 / ballistic), np.full(speed.shape, lift_to_drag / ballistic)
+
+    return area_per_mass
 
 
 def flat() -> Planet:
     """A flat world without rotation or gravity, as Allen & Eggers take it."""
-    zeros = lambda position: np.zeros(position.shape[:-1])  # noqa: E731
+
+    def zeros(position: np.ndarray) -> np.ndarray:
+        return np.zeros(position.shape[:-1])
+
+    def axes(latitude: np.ndarray, longitude: np.ndarray) -> tuple[np.ndarray, ...]:
+        return tuple(np.broadcast_to(axis, (*np.shape(latitude), 3)) for axis in np.eye(3))
+
+    def above(latitude: float, longitude: float, altitude: float) -> np.ndarray:
+        return np.array([0.0, 0.0, altitude])
+
     return Planet(
         gravity=np.zeros_like,
         potential=zeros,
@@ -54,18 +57,16 @@ def flat() -> Planet:
         gm=0.0,
         radius=0.0,
         place=lambda position: (zeros(position), zeros(position), position[..., 2]),
-        position=lambda latitude, longitude, altitude: np.array([0.0, 0.0, float(altitude)]),
-        axes=lambda latitude, longitude: tuple(
-            np.broadcast_to(axis, (*np.shape(latitude), 3)) for axis in np.eye(3)
-        ),
+        position=above,
+        axes=axes,
     )
 
 
 def start(
-    planet: Planet, altitude: float, speed: float, angle_deg: float, latitude: float = 0.4, heading: float = 1.0
+    planet: Planet, altitude: float, speed: float, angle_deg: float, latitude: float = 0.4
 ) -> tuple[np.ndarray, np.ndarray]:
     position = planet.position(latitude, 0.2, altitude)
-    return position, velocity_over_planet(planet, position, speed, math.radians(angle_deg), heading)
+    return position, velocity_over_planet(planet, position, speed, math.radians(angle_deg), 1.0)
 
 
 @pytest.mark.parametrize(("ballistic", "angle_deg"), [(50.0, 30.0), (500.0, 8.0), (5000.0, 90.0)])
@@ -158,7 +159,9 @@ def test_node_drifts_as_first_order_theory_says() -> None:
     position = np.array([major, 0.0, 0.0])
     speed = motion * major
     velocity = np.array([0.0, speed * math.cos(inclination), speed * math.sin(inclination)])
-    path = integrate(position, velocity - frame_velocity(planet, position), planet=planet, until=DAY_OF_ORBITS)
+    path = integrate(
+        position, velocity - frame_velocity(planet, position), planet=planet, until=DAY_OF_ORBITS
+    )
 
     def elements(time: float) -> tuple[float, float]:
         """Osculating axis and node."""
@@ -173,7 +176,9 @@ def test_node_drifts_as_first_order_theory_says() -> None:
     last = np.mean([elements(path.duration - share * orbit) for share in shares], axis=0)
     drift = (last[1] - first[1]) / (path.duration - orbit)
     mean = first[0]  # averaged over an orbit the short-period swing of the axis is gone
-    theory = -1.5 * math.sqrt(EARTH_GM / mean**3) * EARTH_J2 * (EARTH_RADIUS / mean) ** 2 * math.cos(inclination)
+    theory = (
+        -1.5 * math.sqrt(EARTH_GM / mean**3) * EARTH_J2 * (EARTH_RADIUS / mean) ** 2 * math.cos(inclination)
+    )
     # what first-order theory leaves out is of order J2, 0.1 %, with factors up to 3
     assert drift == pytest.approx(theory, rel=3e-3)
 
@@ -198,7 +203,10 @@ def test_lift_turns_the_path_and_does_no_work() -> None:
 def test_a_skip_below_the_top_comes_back_and_lands() -> None:
     planet = earth()
     path = integrate(
-        *start(planet, 120e3, 8000.0, -4.0), planet=planet, air=exponential(), area_per_mass=lifting(60.0, 0.8)
+        *start(planet, 120e3, 8000.0, -4.0),
+        planet=planet,
+        air=exponential(),
+        area_per_mass=lifting(60.0, 0.8),
     )
     altitudes = path.at(np.linspace(0.0, path.duration, 3000)).altitude
     lowest = int(np.argmax(np.diff(altitudes) > 0.0))
@@ -239,8 +247,7 @@ def test_vertical_fall_is_not_singular() -> None:
 def test_air_without_an_answer_is_named() -> None:
     def gap(time: np.ndarray, altitude: np.ndarray, latitude: np.ndarray, longitude: np.ndarray) -> Air:
         air = exponential()(time, altitude, latitude, longitude)
-        return Air("mine", altitude, air.pressure, air.pressure, np.where(altitude < 90e3, np.nan, air.density),
-                   air.pressure, air.species)  # fmt: skip
+        return replace(air, model="mine", density=np.where(altitude < 90e3, np.nan, air.density))
 
     planet = earth()
     with pytest.raises(InputError, match=r"atmosphere 'mine' has no air at 8\d.* km"):
@@ -248,12 +255,14 @@ def test_air_without_an_answer_is_named() -> None:
 
 
 def test_drag_without_an_answer_is_named() -> None:
+    def nothing(air: Air, speed: np.ndarray) -> tuple[np.ndarray, np.ndarray]:
+        return np.full_like(speed, np.nan), np.zeros_like(speed)
+
     planet = earth()
     with pytest.raises(InputError, match="drag has no answer at 120 km and 7500 m/s"):
         integrate(
-            *start(planet, 120e3, 7500.0, -5.0), planet=planet, air=exponential(),
-            area_per_mass=lambda air, speed: (np.full_like(speed, np.nan), np.zeros_like(speed)),
-        )  # fmt: skip
+            *start(planet, 120e3, 7500.0, -5.0), planet=planet, air=exponential(), area_per_mass=nothing
+        )
 
 
 def test_peak_of_nothing_is_nan() -> None:

@@ -103,7 +103,7 @@ def test_apogee_of_an_ellipse_and_of_an_escape() -> None:
 def test_apogee_counts_the_turning_of_the_planet() -> None:
     position = np.array([7e6, 0.0, 0.0])
     over_ground = np.array([0.0, 7000.0, 0.0])
-    inertial = over_ground + [0.0, EARTH_ROTATION * 7e6, 0.0]
+    inertial = over_ground + np.array([0.0, EARTH_ROTATION * 7e6, 0.0])
     assert apogee_height(position, over_ground, earth()) == pytest.approx(
         apogee_height(position, inertial, earth(rotation=0.0)), abs=1e-3
     )
