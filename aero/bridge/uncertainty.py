@@ -28,6 +28,7 @@ GAS_SURFACE_SIGMA = 0.02  # relative 1-sigma of free-molecular drag from the for
 # with mean energy differ by 1.8-2.5 % from Cercignani-Lampis-Lord [Walker2014]
 APPROACH = 0.20  # how slowly drag nears its free-molecular limit, see `drag_band`
 NON_CATALYTIC = 0.5  # a wall that does not recombine atoms may see half the continuum heating (judgement)
+NO_FLUX = 1e-200  # W/m2; a flux whose inverse would overflow counts as none
 _RADIATIVE_DENSITY_EXPONENT = 1.22  # [TauberSutton1991]; that the radius's exponent knows density is left out
 
 
@@ -187,11 +188,11 @@ def heat_band(
     blend knows the free path. One-sided below: half of the continuum part for a non-catalytic wall, growing
     from nothing at 3 km/s, where the shock layer begins to dissociate, to its whole at 5 km/s (judgement).
     Where the flux itself passes through zero with the wall at the recovery temperature, the wall's relative
-    share is held at 1.
+    share is held at 1, and so is that of an accommodation below its own 1-sigma.
     """
     total = heating.total
     v = floats(speed)
-    resting = total == 0.0
+    resting = np.abs(total) < NO_FLUX
     inverse = 1.0 / np.where(resting, np.nan, total)
     convective = heating.bridged * inverse
     radiative = heating.radiative * inverse
@@ -202,11 +203,12 @@ def heat_band(
     if heating.radiative.any():
         by_density = by_density + _RADIATIVE_DENSITY_EXPONENT * radiative
     bias, scatter = density_sigma
+    spread = floats(accommodation_sigma)
     by_wall = heating.by_wall_temperature * (WALL_SIGMA * inverse) * heating.wall_temperature
     contributions = {
         "density bias": by_density * floats(bias),
         "density scatter": by_density * floats(scatter),
-        "accommodation": thin * (floats(accommodation_sigma) / floats(accommodation)),
+        "accommodation": thin * (spread / np.maximum(floats(accommodation), spread)),
         "bridge": thin * heating.continuum_weight * (4.0 * bridge.sigma),
         "continuum level": thick * convective_sigma(v),
         "radiative level": radiative * radiative_sigma(heating.radiative_validity),
@@ -215,8 +217,8 @@ def heat_band(
     dissociated = np.clip((v - 3000.0) / 2000.0, 0.0, 1.0)
     below = {"non-catalytic wall": -np.log1p(thick * dissociated * (NON_CATALYTIC - 1.0))}
     band = _band(total, contributions, below, {})
-    low = np.where(resting, 0.0, np.minimum(band.low, band.high))
-    high = np.where(resting, 0.0, np.maximum(band.low, band.high))
+    low = np.where(resting, total, np.minimum(band.low, band.high))
+    high = np.where(resting, total, np.maximum(band.low, band.high))
     return Band(low, high, contributions, below, {})
 
 

@@ -6,8 +6,6 @@ import sys
 from collections.abc import Mapping, Sequence
 from typing import Any
 
-import pandas as pd
-
 from aero.report import SEGMENT_COLUMNS, facts_text, table_text
 
 CROSSING_COLUMNS = ("length", "bound", "direction", "time_s", "altitude_m", "altitude_low_m", "altitude_high_m")
@@ -54,15 +52,15 @@ def _columns(rows: Sequence[Mapping[str, Any]]) -> dict[str, list[Any]]:
 
 def air_text(columns: Mapping[str, Any]) -> str:
     """Return the atmosphere as `aero air` shows it."""
-    return table_text(pd.DataFrame(dict(columns)))
+    return table_text(columns)
 
 
-def crossings_text(crossings: pd.DataFrame) -> str:
+def crossings_text(crossings: Any) -> str:
     """Return the crossings as a table."""
     return table_text(crossings, columns=CROSSING_COLUMNS, title="Crossings (low and high: 95 %)", colour=colour())
 
 
-def segments_text(segments: pd.DataFrame) -> str:
+def segments_text(segments: Any) -> str:
     """Return the segments as a table."""
     return table_text(segments, columns=SEGMENT_COLUMNS, keys=2, title="Segments", colour=colour())
 

@@ -89,7 +89,9 @@ def _common(
 def _vehicle(
     vehicle: Vehicle, speed: np.ndarray, altitude: np.ndarray, columns: Mapping[str, np.ndarray]
 ) -> list[str]:
-    notes = []
+    notes = list(vehicle.notes)
+    if vehicle.continuum is not None:
+        notes.append("The vehicle's own continuum table is held at its first and last row beyond them.")
     mach = columns["mach"]
     moving = mach > 0.0
     if vehicle.continuum is None and np.any(moving & (mach < SLOW_MACH)):

@@ -256,7 +256,7 @@ def _frame(columns: dict[str, np.ndarray], trajectory: Trajectory, lengths: dict
     }
     if trajectory.time is not None:
         known["time_s"] = trajectory.time
-    for name in ("latitude", "longitude", "flight_path_angle"):
+    for name in ("latitude", "longitude", "flight_path_angle", "angle_of_attack"):
         values = getattr(trajectory, name)
         if values is not None:
             known[f"{name}_deg"] = np.degrees(values)
