@@ -24,6 +24,8 @@ if TYPE_CHECKING:
 
 ROWS = 1000  # a step chosen by us gives at most so many rows
 MOST_ROWS = 10_000_000  # a step that asks for more is a slip of the unit
+TOLERANCE = 1e-8  # closes the balance of energy to 1e-6 with a vehicle's own coefficients, kinks and all
+TOLERANCE_SINGLE = 1e-7  # MSIS answers in single precision: below this, steps shorten to fight its noise
 SLOW_MACH = 2.0  # below it the Newtonian limit is an extrapolation (judgement)
 
 
@@ -44,7 +46,7 @@ def fly(
     settings: Settings | None = None,
     until: float | None = None,
     step: float | None = None,
-    tolerance: float = 1e-7,
+    tolerance: float | None = None,
     planet: Planet | None = None,
 ) -> Flight:
     """Fly an entry in three degrees of freedom with the vehicle's own coefficients.
@@ -80,9 +82,9 @@ def fly(
     step : float, optional [s]
         Time between samples; when None, the smallest of 1, 2 and 5 by a power of ten that keeps within
         `ROWS` rows. The last sample is the end of the flight.
-    tolerance : float
-        Relative tolerance of an integration step. MSIS answers in single precision: much under 1e-7 the
-        integrator fights that noise with ever shorter steps.
+    tolerance : float, optional
+        Relative tolerance of an integration step. When None, `TOLERANCE`, or `TOLERANCE_SINGLE` in an
+        atmosphere of place and date.
     planet : Planet, optional
         The Earth when None.
 
@@ -112,7 +114,10 @@ def fly(
     )
     check("--until", until, 0.0, 100.0 * 365.25 * DAY, "s", above=True)
     check("--step", step, 0.0, math.inf, "s", above=True)
-    air = air_along(_standard() if atmosphere is None else atmosphere, epoch)
+    atmosphere = _standard() if atmosphere is None else atmosphere
+    air = air_along(atmosphere, epoch)
+    if tolerance is None:
+        tolerance = TOLERANCE_SINGLE if atmosphere.needs_place else TOLERANCE
     area_per_mass, heat_flux, notes = _loads(vehicle, ballistic_coefficient, angle_of_attack, settings)
     path = integrate(
         position,
