@@ -109,14 +109,10 @@ class Atmosphere(Protocol):
     ) -> Air:
         """Return the air at each point."""
 
-    def uncertainty(
-        self, altitude_m: ArrayLike, *, utc: Times | np.datetime64 | None = None
-    ) -> tuple[Floats, Floats]:
+    def uncertainty(self, altitude_m: ArrayLike, *, utc: Times | None = None) -> tuple[Floats, Floats]:
         """Return the relative 1-sigma density uncertainty as (bias, scatter)."""
 
-    def notes(
-        self, altitude_m: ArrayLike | None = None, utc: Times | np.datetime64 | None = None
-    ) -> tuple[str, ...]:
+    def notes(self, altitude_m: ArrayLike | None = None, utc: Times | None = None) -> tuple[str, ...]:
         """Return what a reader should know about this model at these points."""
 
     def provenance(self) -> dict[str, object]:

@@ -17,8 +17,12 @@ MOST_ROWS = 1_000_000
 
 
 @click.command("air", epilog="Example: aero air --from 80km --to 200km --step 10km")
-@click.option("--from", "start", type=shared.Quantity("length", "80km"), required=True, help="Lowest altitude.")
-@click.option("--to", "stop", type=shared.Quantity("length", "200km"), required=True, help="Highest altitude.")
+@click.option(
+    "--from", "start", type=shared.Quantity("length", "80km"), required=True, help="Lowest altitude."
+)
+@click.option(
+    "--to", "stop", type=shared.Quantity("length", "200km"), required=True, help="Highest altitude."
+)
 @click.option("--step", type=shared.Quantity("length", "10km"), required=True, help="Altitude step.")
 @shared.place_options
 @shared.atmosphere_options
@@ -78,7 +82,9 @@ def altitudes(start: float, stop: float, step: float) -> np.ndarray:
     count = (stop - start) / step
     if count > MOST_ROWS:
         raise InputError(
-            f"{count:.0f} rows would result, expected at most {MOST_ROWS}", source="--step", remedy="take a larger one"
+            f"{count:.0f} rows would result, expected at most {MOST_ROWS}",
+            source="--step",
+            remedy="take a larger one",
         )
     values = start + step * np.arange(int(np.floor(count + 1e-9)) + 1)
     if stop - values[-1] > 1e-6 * step:
@@ -94,7 +100,9 @@ def _draw(options: dict[str, Any], columns: dict[str, np.ndarray], footer: str) 
     target = Path(options["figure"])
     if target.suffix.lower() not in {".svg", ".png"}:
         raise InputError(
-            f"'{target.suffix}' is not a figure format", source=str(target), remedy="end the name in .svg or .png"
+            f"'{target.suffix}' is not a figure format",
+            source=str(target),
+            remedy="end the name in .svg or .png",
         )
     check_target(target, replace=options["replace"], folder=False)
     import pandas as pd

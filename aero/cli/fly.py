@@ -24,7 +24,9 @@ from aero.errors import InputError
     type=shared.Quantity("ballistic coefficient", "100kg/m2"),
     help="A constant m/(C_D A) in place of the vehicle's own drag; no vehicle file is then needed.",
 )
-@click.option("--altitude", type=shared.Quantity("length", "120km"), required=True, help="Geodetic, of the start.")
+@click.option(
+    "--altitude", type=shared.Quantity("length", "120km"), required=True, help="Geodetic, of the start."
+)
 @click.option("--speed", type=shared.Quantity("speed", "7.6km/s"), required=True, help="At the start.")
 @click.option(
     "--flight-path-angle",
@@ -32,7 +34,9 @@ from aero.errors import InputError
     required=True,
     help="Above the horizontal; negative down.",
 )
-@click.option("--heading", type=shared.Quantity("angle", "90deg"), help="From north through east. Default: 90deg.")
+@click.option(
+    "--heading", type=shared.Quantity("angle", "90deg"), help="From north through east. Default: 90deg."
+)
 @click.option(
     "--velocity-frame",
     type=click.Choice(["air", "inertial"]),
@@ -41,9 +45,15 @@ from aero.errors import InputError
     help="What speed and angles are relative to.",
 )
 @click.option("--angle-of-attack", type=shared.Quantity("angle", "10deg"), help="Held all the way.")
-@click.option("--until", metavar="300s|DATE", help="End at the latest at this time, or at a date where --date is given.")
-@click.option("--step", type=shared.Quantity("time", "1s"), help="Time between samples. Default: up to 1000 rows.")
-@click.option("--out", type=click.Path(), metavar="FILE.csv", help="Trajectory file to write, which survey reads.")
+@click.option(
+    "--until", metavar="300s|DATE", help="End at the latest at this time, or at a date where --date is given."
+)
+@click.option(
+    "--step", type=shared.Quantity("time", "1s"), help="Time between samples. Default: up to 1000 rows."
+)
+@click.option(
+    "--out", type=click.Path(), metavar="FILE.csv", help="Trajectory file to write, which survey reads."
+)
 @shared.replace_option
 @shared.place_options
 @shared.atmosphere_options
@@ -87,7 +97,9 @@ def command(**options: Any) -> None:
         from aero.trajectory import write_trajectory
 
         comments = [_recipe(options, air_model.description), *notes]
-        write_trajectory(flight.trajectory(Path(out).stem), out, replace=options["replace"], comments=comments)
+        write_trajectory(
+            flight.trajectory(Path(out).stem), out, replace=options["replace"], comments=comments
+        )
     _show(flight, air_model, why, notes, options)
 
 
@@ -96,8 +108,6 @@ _ASSUMED = {
     "longitude": "the start is at longitude 0",
     "heading": "the flight heads due east",
 }
-
-
 
 
 def _check_out(options: dict[str, Any]) -> None:
@@ -120,7 +130,9 @@ def _until(options: dict[str, Any]) -> float | None:
 
     if "-" in text[1:] and text[:4].isdigit():
         if options["date"] is None:
-            raise InputError("is a date, and the flight has none", source="--until", remedy="give --date as well")
+            raise InputError(
+                "is a date, and the flight has none", source="--until", remedy="give --date as well"
+            )
         return float((utc(text, source="--until") - options["date"]).astype(float) * 1e-6)
     return quantity(text, "time", source="--until")
 
@@ -150,4 +162,7 @@ def _show(flight: Any, air_model: Any, why: str, notes: list[str], options: dict
         say(f"note: {note}", style=style)
     say(CAUTION, style=style)
     if options["out"] is not None:
-        say(f"Wrote {options['out']}; survey it with: aero survey {options['out']} --vehicle FILE --out DIR", style=style)
+        say(
+            f"Wrote {options['out']}; survey it with: aero survey {options['out']} --vehicle FILE --out DIR",
+            style=style,
+        )

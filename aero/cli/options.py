@@ -20,7 +20,7 @@ ATMOSPHERE_NAMES = ("standard-1976", "nrlmsise-00", "msis-2.1")
 PLACED = ("nrlmsise-00", "msis-2.1")
 
 
-class Quantity(click.ParamType):
+class Quantity(click.ParamType[float]):
     """A number with its unit, such as 120km."""
 
     def __init__(self, dimension: str, example: str) -> None:
@@ -41,12 +41,14 @@ class Quantity(click.ParamType):
         return self.name
 
 
-class Date(click.ParamType):
+class Date(click.ParamType[np.datetime64]):
     """A UTC date in ISO 8601."""
 
     name = "UTC"
 
-    def convert(self, value: object, param: click.Parameter | None, ctx: click.Context | None) -> np.datetime64:
+    def convert(
+        self, value: object, param: click.Parameter | None, ctx: click.Context | None
+    ) -> np.datetime64:
         """Return the date."""
         if isinstance(value, np.datetime64):
             return value
@@ -56,7 +58,7 @@ class Date(click.ParamType):
             self.fail(str(error).rstrip("."), param, ctx)
 
 
-class Bounds(click.ParamType):
+class Bounds(click.ParamType[tuple[float, float, float]]):
     """Three regime bounds, comma-separated."""
 
     name = "K,K,K"
@@ -76,7 +78,7 @@ class Bounds(click.ParamType):
             self.fail(f"{shown.rstrip('.')}; write them as 0.01,0.1,10", param, ctx)
 
 
-class Wall(click.ParamType):
+class Wall(click.ParamType[float | str]):
     """A wall temperature or the word radiative."""
 
     name = "300K|radiative"
@@ -139,7 +141,9 @@ atmosphere_options = together(
     click.option("--f107a", type=float, help="81-day mean F10.7, in sfu."),
     click.option("--ap", type=float, help="Daily Ap index, 2 nT units."),
     click.option(
-        "--space-weather", type=click.Path(dir_okay=False), help="A file of daily indices, as docs/formats.md says."
+        "--space-weather",
+        type=click.Path(dir_okay=False),
+        help="A file of daily indices, as docs/formats.md says.",
     ),
 )
 model_options = together(
@@ -151,7 +155,10 @@ model_options = together(
         help="Definition of the mean free path shown and used for the tags.",
     ),
     click.option(
-        "--bounds", type=Bounds(), default=(0.01, 0.1, 10.0), help="Regime bounds in Knudsen number. [0.01,0.1,10]"
+        "--bounds",
+        type=Bounds(),
+        default=(0.01, 0.1, 10.0),
+        help="Regime bounds in Knudsen number. [0.01,0.1,10]",
     ),
     click.option("--wall-temperature", "wall", type=Wall(), help="Replaces the vehicle's own."),
     click.option(

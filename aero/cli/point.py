@@ -24,10 +24,16 @@ if TYPE_CHECKING:
     "--speed", type=shared.Quantity("speed", "7.5km/s"), required=True, help="Speed relative to the air."
 )
 @click.option(
-    "--length", "lengths", multiple=True, metavar="[NAME=]1m", help="A length whose regime matters; may be repeated."
+    "--length",
+    "lengths",
+    multiple=True,
+    metavar="[NAME=]1m",
+    help="A length whose regime matters; may be repeated.",
 )
 @click.option("--vehicle", "vehicle_file", type=click.Path(), metavar="FILE", help="A vehicle file (TOML).")
-@click.option("--shape", metavar="KIND", help="A body without a file: sphere, cylinder, flat-plate, cone, ...")
+@click.option(
+    "--shape", metavar="KIND", help="A body without a file: sphere, cylinder, flat-plate, cone, ..."
+)
 @click.option("--diameter", help="Of a sphere or cylinder.")
 @click.option("--nose-radius", help="Of a sphere-cone.")
 @click.option("--half-angle", help="Of a cone or sphere-cone.")
@@ -36,7 +42,9 @@ if TYPE_CHECKING:
 @click.option("--body-width", help="Of a flat plate or box.")
 @click.option("--body-height", help="Of a box.")
 @click.option(
-    "--angle-of-attack", type=shared.Quantity("angle", "10deg"), help="Replaces the vehicle's own angle of attack."
+    "--angle-of-attack",
+    type=shared.Quantity("angle", "10deg"),
+    help="Replaces the vehicle's own angle of attack.",
 )
 @shared.place_options
 @shared.atmosphere_options
@@ -50,11 +58,14 @@ def command(**options: Any) -> None:
     lengths = _lengths(options["lengths"], vehicle)
     if vehicle is None and not lengths:
         raise InputError(
-            "no length is given", source="aero point", remedy="give --length 1m, --vehicle FILE or --shape sphere"
+            "no length is given",
+            source="aero point",
+            remedy="give --length 1m, --vehicle FILE or --shape sphere",
         )
     missing = missing_of(options)
     air_model, why = shared.choose_atmosphere(
-        missing=missing, **{k: options[k] for k in ("atmosphere", "activity", "f107", "f107a", "ap", "space_weather")}
+        missing=missing,
+        **{k: options[k] for k in ("atmosphere", "activity", "f107", "f107a", "ap", "space_weather")},
     )
     answer = point(
         options["altitude"],
@@ -87,6 +98,7 @@ def command(**options: Any) -> None:
 
 
 def missing_of(options: dict[str, Any]) -> str | None:
+    """Return what the options leave unknown of date and place, None where all is known."""
     place = options["latitude"] is not None and options["longitude"] is not None
     if place and options["date"] is not None:
         return None

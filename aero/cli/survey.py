@@ -16,15 +16,27 @@ from aero.errors import InputError
     epilog="Example: aero survey trajectories/marram-steep.csv --vehicle trajectories/marram.toml --out out/",
 )
 @click.argument("trajectory", type=click.Path(), metavar="TRAJECTORY")
-@click.option("--vehicle", "vehicle_file", type=click.Path(), required=True, metavar="FILE", help="Vehicle file (TOML).")
-@click.option("--out", type=click.Path(), required=True, metavar="DIR", help="Folder to write, whole or not at all.")
+@click.option(
+    "--vehicle", "vehicle_file", type=click.Path(), required=True, metavar="FILE", help="Vehicle file (TOML)."
+)
+@click.option(
+    "--out", type=click.Path(), required=True, metavar="DIR", help="Folder to write, whole or not at all."
+)
 @shared.replace_option
 @click.option("--skip-bad-rows", is_flag=True, help="Survey the good rows and list the bad ones.")
 @click.option(
-    "--tables", metavar="csv,parquet", default="csv,parquet", show_default=True, help="Formats of the points table."
+    "--tables",
+    metavar="csv,parquet",
+    default="csv,parquet",
+    show_default=True,
+    help="Formats of the points table.",
 )
 @click.option(
-    "--figures", type=click.Choice(["all", "none"]), default="all", show_default=True, help="Whether figures are drawn."
+    "--figures",
+    type=click.Choice(["all", "none"]),
+    default="all",
+    show_default=True,
+    help="Whether figures are drawn.",
 )
 @shared.place_options
 @shared.atmosphere_options
@@ -87,7 +99,9 @@ def trajectory_missing(trajectory: Any) -> str | None:
 def _tables(text: str) -> tuple[str, ...]:
     names = tuple(part.strip() for part in text.split(","))
     if names not in {("csv", "parquet"), ("parquet", "csv"), ("parquet",), ("csv",)}:
-        raise InputError(f"'{text}' is not a choice of tables", source="--tables", remedy="use csv,parquet or parquet")
+        raise InputError(
+            f"'{text}' is not a choice of tables", source="--tables", remedy="use csv,parquet or parquet"
+        )
     return names
 
 

@@ -8,7 +8,15 @@ from typing import Any
 
 from aero.report import SEGMENT_COLUMNS, facts_text, table_text
 
-CROSSING_COLUMNS = ("length", "bound", "direction", "time_s", "altitude_m", "altitude_low_m", "altitude_high_m")
+CROSSING_COLUMNS = (
+    "length",
+    "bound",
+    "direction",
+    "time_s",
+    "altitude_m",
+    "altitude_low_m",
+    "altitude_high_m",
+)
 
 
 def colour() -> bool:
@@ -57,7 +65,9 @@ def air_text(columns: Mapping[str, Any]) -> str:
 
 def crossings_text(crossings: Any) -> str:
     """Return the crossings as a table."""
-    return table_text(crossings, columns=CROSSING_COLUMNS, title="Crossings (low and high: 95 %)", colour=colour())
+    return table_text(
+        crossings, columns=CROSSING_COLUMNS, title="Crossings (low and high: 95 %)", colour=colour()
+    )
 
 
 def segments_text(segments: Any) -> str:

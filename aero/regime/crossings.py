@@ -89,15 +89,15 @@ def find_crossings(
     rarefying = sampled_path[start + 1] >= target
 
     def path(when: Floats) -> Floats:
-        return mean_free_path(atmosphere.at(track.altitude(when), **track.place(when)), free_path)
+        return mean_free_path(track.place(when).air(atmosphere, track.altitude(when)), free_path)
 
     time = _bisect(path, track.altitude.time[start], track.altitude.time[start + 1], target, ~rarefying)
     altitude = track.altitude(time)
     place = track.place(time)
-    spread = 1.96 * log_uncertainty(atmosphere.at(altitude, **place), place.get("utc"))
+    spread = 1.96 * log_uncertainty(place.air(atmosphere, altitude), place.utc)
 
     def vertical(height: Floats) -> Floats:
-        return mean_free_path(atmosphere.at(height, **place), free_path)
+        return mean_free_path(place.air(atmosphere, height), free_path)
 
     low = _shift(vertical, altitude, target * np.exp(-spread), altitude_range)
     high = _shift(vertical, altitude, target * np.exp(spread), altitude_range)
@@ -146,5 +146,3 @@ def _shift(
         high = np.where(above, middle, high)
         low = np.where(above, low, middle)
     return np.where(reachable, 0.5 * (low + high), np.nan)
-
-

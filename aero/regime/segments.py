@@ -40,7 +40,11 @@ class Cuts:
 
 
 def cut_segments(
-    time: Floats, sampled_path: Floats, lengths: Sequence[float], bounds: Sequence[float], crossings: Crossings
+    time: Floats,
+    sampled_path: Floats,
+    lengths: Sequence[float],
+    bounds: Sequence[float],
+    crossings: Crossings,
 ) -> Cuts:
     """Cut a flight at its crossings.
 

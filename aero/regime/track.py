@@ -7,12 +7,13 @@ in steps stays monotone between them.
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import NamedTuple
 
 import numpy as np
-
 from numpy.typing import NDArray
 
 from aero.air.cubic import monotone_slopes, stencil_slopes
+from aero.air.state import Air, Atmosphere
 from aero.arrays import Floats, Times
 from aero.trajectory import Trajectory
 
@@ -81,6 +82,20 @@ class Cubic:
         return running[i] + step * part
 
 
+class Place(NamedTuple):
+    """Latitude and longitude [deg] and UTC of points, None where unknown."""
+
+    latitude_deg: Floats | None
+    longitude_deg: Floats | None
+    utc: Times | None
+
+    def air(self, atmosphere: Atmosphere, altitude: Floats) -> Air:
+        """Return the air at altitudes [m] above the place."""
+        return atmosphere.at(
+            altitude, latitude_deg=self.latitude_deg, longitude_deg=self.longitude_deg, utc=self.utc
+        )
+
+
 @dataclass(frozen=True, eq=False)
 class Track:
     """Where the vehicle is at any time between the first and last sample.
@@ -107,26 +122,22 @@ class Track:
         time = trajectory.time
         if time is None:
             raise ValueError("a track needs a trajectory with times")
-        placed = trajectory.latitude is not None and trajectory.longitude is not None
+        latitude, longitude = trajectory.latitude, trajectory.longitude
         return cls(
             Cubic(time, trajectory.altitude),
             Cubic(time, trajectory.speed),
-            Cubic(time, trajectory.latitude) if placed else None,
-            Cubic(time, np.unwrap(trajectory.longitude)) if placed else None,
+            None if latitude is None else Cubic(time, latitude),
+            None if longitude is None else Cubic(time, np.unwrap(longitude)),
             trajectory.epoch,
         )
 
-    def place(self, when: Floats) -> dict[str, object]:
-        """Return latitude, longitude and UTC at each time as keywords for `Atmosphere.at`."""
-        if self.latitude is None or self.longitude is None:
-            return {}
-        keywords: dict[str, object] = {
-            "latitude_deg": np.degrees(self.latitude(when)),
-            "longitude_deg": np.degrees(self.longitude(when)),
-        }
-        if self.epoch is not None:
-            keywords["utc"] = clock(self.epoch, when)
-        return keywords
+    def place(self, when: Floats) -> Place:
+        """Return the place and date at each time."""
+        return Place(
+            None if self.latitude is None else np.degrees(self.latitude(when)),
+            None if self.longitude is None else np.degrees(self.longitude(when)),
+            None if self.epoch is None else clock(self.epoch, when),
+        )
 
 
 def clock(epoch: np.datetime64, seconds: Floats) -> Times:
@@ -137,4 +148,5 @@ def clock(epoch: np.datetime64, seconds: Floats) -> Times:
     >>> clock(np.datetime64("2026-03-01"), np.array([1.5]))
     array(['2026-03-01T00:00:01.500000'], dtype='datetime64[us]')
     """
-    return epoch.astype("datetime64[us]") + np.rint(seconds * 1e6).astype("timedelta64[us]")
+    when: Times = epoch.astype("datetime64[us]") + np.rint(seconds * 1e6).astype("timedelta64[us]")
+    return when

@@ -5,7 +5,7 @@ Both panels share the coefficient's axis and rise towards thinner air, so that t
 
 from __future__ import annotations
 
-from collections.abc import Sequence
+from collections.abc import Mapping, Sequence
 
 import numpy as np
 from matplotlib.axes import Axes
@@ -16,7 +16,7 @@ from aero.arrays import Floats
 from aero.report import palette, style
 from aero.report.bands import Band, altitude_bounds, bands, fill
 from aero.report.labels import Labels
-from aero.report.names import REFERENCE, Table, column, has_numbers, row_count, shorten
+from aero.report.names import REFERENCE, Table, column, has_numbers, row_count, shorten, thin_air_limit
 from aero.report.scales import decade_axis, linear_axis, log_limits, span
 from aero.report.strips import regime_key
 from aero.report.style import SMALL
@@ -26,9 +26,10 @@ _LEFT, _BOTTOM, _RIGHT, _TOP, _BETWEEN = 0.62, 0.92, 0.2, 0.38, 0.72  # margins 
 _COLUMN_HEIGHT, _STRIP = 4.1, 0.09  # in
 _MANY_RUNS = 40  # turns of altitude from which the band is drawn as one envelope
 # suffix of the column -> (label, line style); the bridged value comes last, on top
+_THIN = "_free_molecular"
 _PARTS = {
     "_continuum": ("continuum\nlimit", {"color": palette.GREY, "linewidth": 0.9, "linestyle": (0, (4, 2))}),
-    "_free_molecular": ("free-molecular\nlimit", {"color": palette.GREY, "linewidth": 0.9}),
+    _THIN: ("free-molecular\nlimit", {"color": palette.GREY, "linewidth": 0.9}),
     "": ("bridged", {"color": palette.INK, "linewidth": 1.9}),
 }
 
@@ -80,8 +81,10 @@ def figure_coefficients(
     right = style.place_axes(figure, width - _RIGHT - half, _BOTTOM, width - _RIGHT, height - _TOP)
     altitude, knudsen = column(points, "altitude_m") / 1e3, column(points, f"knudsen.{length_name}")
     label = f"{coefficient} coefficient [-]"
+    values = {suffix: column(points, name + suffix) for suffix in _PARTS}
+    values[_THIN] = thin_air_limit(points, name + _THIN, bounds[0], length_name)
     for axes in (left, right):
-        linear_axis(axes, "x", _limits(points, results, name), label, most=6)
+        linear_axis(axes, "x", _limits(values, points, results, name), label, most=6)
         style.quiet_axes(axes, grid="x")
     linear_axis(left, "y", span(altitude, least=5.0), "altitude [km]")
     whose = "reference length" if length_name == REFERENCE else shorten(length_name, 24)
@@ -90,8 +93,8 @@ def figure_coefficients(
     low, high = left.get_ylim()
     _scale(left, [Band(b.regime, b.bottom / 1e3, b.top / 1e3) for b in bands(edges, low * 1e3, high * 1e3)])
     _scale(right, _knudsen_bands(bounds, right.get_ylim()))
-    _curves(left, points, name, altitude, results, "altitude_m", 1e-3, named=True)
-    _curves(right, points, name, knudsen, results, f"knudsen.{length_name}", 1.0, named=False)
+    _curves(left, values, points, name, altitude, results, "altitude_m", 1e-3, named=True)
+    _curves(right, values, points, name, knudsen, results, f"knudsen.{length_name}", 1.0, named=False)
     style.headline(
         figure, title if title is not None else f"Bridged {coefficient} coefficient between its limits"
     )
@@ -100,12 +103,13 @@ def figure_coefficients(
     return figure
 
 
-def _limits(points: Table, results: Table | None, name: str) -> tuple[float, float]:
-    suffixes = ("", "_free_molecular", "_continuum", "_low", "_high")
-    values = [column(points, name + suffix) for suffix in suffixes]
+def _limits(
+    values: Mapping[str, Floats], points: Table, results: Table | None, name: str
+) -> tuple[float, float]:
+    shown = [*values.values(), *(column(points, name + suffix) for suffix in ("_low", "_high"))]
     if results is not None:
-        values += [column(results, name + suffix) for suffix in ("", "_low", "_high")]
-    return span(np.concatenate(values), least=0.1, pad=0.07)
+        shown += [column(results, name + suffix) for suffix in ("", "_low", "_high")]
+    return span(np.concatenate(shown), least=0.1, pad=0.07)
 
 
 def _knudsen_bands(bounds: Sequence[float], limits: tuple[float, float]) -> list[Band]:
@@ -139,6 +143,7 @@ def _scale(axes: Axes, regimes: Sequence[Band]) -> None:
 
 def _curves(
     axes: Axes,
+    values: Mapping[str, Floats],
     points: Table,
     name: str,
     upward: Floats,
@@ -148,7 +153,6 @@ def _curves(
     *,
     named: bool,
 ) -> None:
-    values = {suffix: column(points, name + suffix) for suffix in _PARTS}
     low, high = column(points, f"{name}_low"), column(points, f"{name}_high")
     rows = thin(upward, *values.values(), low, high)
     _wash(axes, upward[rows], low[rows], high[rows])
@@ -218,7 +222,7 @@ def _results(
         labels.put(value[best], place[best], "own runs", colour=palette.ACCENT, size=SMALL)
 
 
-def _name_curves(axes: Axes, labels: Labels, values: dict[str, Floats], upward: Floats) -> None:
+def _name_curves(axes: Axes, labels: Labels, values: Mapping[str, Floats], upward: Floats) -> None:
     """Name each line where it stands alone: the bridged value midway, each limit where it is not met."""
     bottom, top = axes.get_ylim()
     height = top - bottom

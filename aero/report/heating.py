@@ -11,7 +11,7 @@ from matplotlib.figure import Figure
 from aero.arrays import Floats
 from aero.report import palette, style
 from aero.report.labels import SIDES, Labels
-from aero.report.names import REFERENCE, Table, column, has_numbers, length_names, shorten
+from aero.report.names import REFERENCE, Table, column, has_numbers, length_names, shorten, thin_air_limit
 from aero.report.numbers import Scale, format_quantity, scale_for
 from aero.report.pieces import NO_TIME, Along, draw_pieces, pieces_of, run_along
 from aero.report.scales import linear_axis
@@ -23,8 +23,9 @@ _LEFT, _BOTTOM, _RIGHT, _TOP = 0.74, 0.92, 0.95, 0.74  # margins [in]
 _STRIP, _BETWEEN = 0.2, 0.1  # in
 _FLUX = "heat_flux_W_m2"
 _LOAD = "heat_load_J_m2"
+_THIN = "heat_flux_free_molecular_W_m2"
 _LIMITS = {
-    "heat_flux_free_molecular_W_m2": ("free-molecular\nlimit", {"linestyle": "-"}),
+    _THIN: ("free-molecular\nlimit", {"linestyle": "-"}),
     "heat_flux_continuum_W_m2": ("continuum\nlimit", {"linestyle": (0, (4, 2))}),
 }
 _RADIATIVE = "heat_flux_radiative_W_m2"
@@ -88,7 +89,7 @@ def figure_heating(
     loaded = along.timed and has_numbers(points, _LOAD)
     figure = style.new_figure(size, 5.0 if loaded else 3.9)
     flux, load, strip = _panels(figure, loaded)
-    _flux_panel(flux, points, along)
+    _flux_panel(flux, points, along, bounds[0], length_name)
     if load is not None:
         _load_panel(load, points, along)
         style.align_labels(flux, load, reach=0.38)
@@ -131,7 +132,7 @@ def _bare_time_axis(axes: Axes, along: Along) -> None:
     axes.tick_params(axis="x", labelbottom=False, length=0.0)
 
 
-def _flux_panel(axes: Axes, points: Table, along: Along) -> None:
+def _flux_panel(axes: Axes, points: Table, along: Along, continuum_bound: float, length_name: str) -> None:
     flux = column(points, _FLUX)
     low, high = column(points, "heat_flux_low_W_m2"), column(points, "heat_flux_high_W_m2")
     tallest = float(np.nanmax(np.concatenate([flux, high])))
@@ -142,6 +143,7 @@ def _flux_panel(axes: Axes, points: Table, along: Along) -> None:
     style.quiet_axes(axes, grid="y", keep=("left", "bottom"))
     names = [*_LIMITS, _RADIATIVE]
     series = {name: column(points, name) for name in names}
+    series[_THIN] = thin_air_limit(points, _THIN, continuum_bound, length_name)
     rows = thin(flux, low, high, *series.values())
     x = along.places[rows]
     axes.fill_between(

@@ -68,6 +68,22 @@ def column(table: Table, name: str) -> Floats:
     return np.full(row_count(table), np.nan)
 
 
+def thin_air_limit(table: Table, name: str, continuum_bound: float, length_name: str) -> Floats:
+    """Return a free-molecular limit where it says something, NaN elsewhere.
+
+    A decade below the continuum bound nothing leans on it any more, and at low speed it runs off any scale that
+    would show the rest.
+
+    Examples
+    --------
+    >>> thin_air_limit({"c": [9.0, 2.2], "knudsen.nose": [1e-5, 1.0]}, "c", 0.01, "nose").tolist()
+    [nan, 2.2]
+    """
+    values = column(table, name)
+    knudsen = column(table, f"knudsen.{length_name}")
+    return np.where(knudsen < 0.1 * continuum_bound, np.nan, values)
+
+
 def row_count(table: Table) -> int:
     """Return the number of rows."""
     for values in dict(table).values():

@@ -11,9 +11,9 @@ from typing import TYPE_CHECKING
 from aero.callable_module import make_callable
 
 if TYPE_CHECKING:
+    from aero.survey.one_pass import Survey, survey
     from aero.survey.one_point import point
     from aero.survey.settings import Settings
-    from aero.survey.one_pass import Survey, survey
 
 _HOME = {"Settings": "settings", "Survey": "one_pass", "point": "one_point", "survey": "one_pass"}
 __all__ = ["Settings", "Survey", "point", "survey"]

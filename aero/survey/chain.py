@@ -198,7 +198,14 @@ def _vehicle_columns(
     """Return the columns of heating, then of drag, which needs the wall temperature that heating leaves."""
     spread = accommodation_uncertainty(air.altitude)
     wall, columns = _heat_columns(
-        air, moving, accommodated, wall_choice(inputs, vehicle, settings), vehicle, settings, density_uncertainty, spread
+        air,
+        moving,
+        accommodated,
+        wall_choice(inputs, vehicle, settings),
+        vehicle,
+        settings,
+        density_uncertainty,
+        spread,
     )
     columns["wall_temperature_K"] = wall
     angle = vehicle.angle_of_attack if inputs.angle_of_attack is None else inputs.angle_of_attack
@@ -206,7 +213,13 @@ def _vehicle_columns(
     knudsen = path / across
     free = free_molecular(vehicle, air, moving, wall, accommodated, angle)
     dense = continuum(
-        vehicle, air, moving, path / vehicle.reference_length, angle, real_gas=settings.real_gas, wall_temperature=wall
+        vehicle,
+        air,
+        moving,
+        path / vehicle.reference_length,
+        angle,
+        real_gas=settings.real_gas,
+        wall_temperature=wall,
     )
     bridge = bridge_for(vehicle, "drag")
     emitted = None
@@ -284,7 +297,13 @@ def _heat_columns(
     """Return the wall temperature and the columns of heating, NaN where the vehicle has no nose radius."""
     heat_bridge = bridge_for(vehicle, "heating")
     heat = stagnation(
-        vehicle, air, moving, accommodated, wall, correlation=settings.convective, exponent=heat_bridge.exponent
+        vehicle,
+        air,
+        moving,
+        accommodated,
+        wall,
+        correlation=settings.convective,
+        exponent=heat_bridge.exponent,
     )
     if heat is None:
         if isinstance(wall, str):
@@ -294,7 +313,9 @@ def _heat_columns(
                 remedy="give [heating] nose_radius or a wall temperature",
             )
         nothing = np.full_like(air.altitude, np.nan)
-        return np.broadcast_to(np.asarray(wall, dtype=np.float64), air.altitude.shape), dict.fromkeys(HEAT, nothing)
+        return np.broadcast_to(np.asarray(wall, dtype=np.float64), air.altitude.shape), dict.fromkeys(
+            HEAT, nothing
+        )
     band = heat_band(
         heat,
         heat_bridge,

@@ -38,7 +38,11 @@ _BEFORE = (
     Column("speed_ratio", "1", "speed over the most probable molecular speed"),
     Column("dynamic_pressure_Pa", "Pa", "dynamic pressure"),
     Column("reynolds", "1", "free-stream Reynolds number on the reference length"),
-    Column("reynolds_stagnation", "1", "Re0: density and speed of the free stream, viscosity at total temperature"),
+    Column(
+        "reynolds_stagnation",
+        "1",
+        "Re0: density and speed of the free stream, viscosity at total temperature",
+    ),
     Column("cheng", "1", "Cheng's parameter M² C*/Re on the reference length"),
     Column("knudsen_stand_off", "1", "free path behind a normal shock over the shock stand-off"),
 )

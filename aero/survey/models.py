@@ -113,9 +113,7 @@ def _wall(survey: Survey) -> str:
         return "the trajectory's own column"
     fixed = survey.vehicle.surface.temperature
     if chosen == "radiative" or fixed is None:
-        return (
-            f"radiative balance, emissivity {survey.vehicle.surface.emissivity:g}, surroundings equivalent to 250 K"
-        )
+        return f"radiative balance, emissivity {survey.vehicle.surface.emissivity:g}, surroundings equivalent to 250 K"
     return f"fixed at {fixed:g} K by the vehicle file"
 
 

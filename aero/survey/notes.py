@@ -36,10 +36,14 @@ def survey_notes(
     notes = list(trajectory.notes)
     if trajectory.skipped:
         count = len(trajectory.skipped)
-        notes.append(f"{count} bad row{'s were' if count > 1 else ' was'} skipped; skipped.csv lists each with its reason.")
+        notes.append(
+            f"{count} bad row{'s were' if count > 1 else ' was'} skipped; skipped.csv lists each with its reason."
+        )
     if trajectory.time is None:
         notes.append("No time column: points were surveyed one by one, without crossings, segments or loads.")
-    notes += _common(vehicle, atmosphere, settings, trajectory.altitude, trajectory.speed, columns, trajectory.utc)
+    notes += _common(
+        vehicle, atmosphere, settings, trajectory.altitude, trajectory.speed, columns, trajectory.utc
+    )
     return tuple(notes)
 
 
@@ -57,7 +61,9 @@ def point_notes(
     utc = None if date is None else np.array([date])
     notes = _common(vehicle, atmosphere, settings, np.array([altitude]), np.array([speed]), columns, utc)
     if vehicle is None:
-        notes.append("Emitted Knudsen numbers are for a 300 K wall with full accommodation, unless one is given.")
+        notes.append(
+            "Emitted Knudsen numbers are for a 300 K wall with full accommodation, unless one is given."
+        )
     if speed == 0.0:
         notes.append("At rest there are no coefficients, no shock and no heat flux.")
     return tuple(notes)
@@ -80,15 +86,15 @@ def _common(
         )
     notes += atmosphere.notes(altitude, utc)
     if atmosphere.needs_place and altitude.size and float(np.max(altitude)) > ACTIVE_FROM:
-        notes.append("Winds of 100-200 m/s in the thermosphere are not modelled; they change drag by 2-5 % (judgement).")
+        notes.append(
+            "Winds of 100-200 m/s in the thermosphere are not modelled; they change drag by 2-5 % (judgement)."
+        )
     if vehicle is not None:
-        notes += _vehicle(vehicle, speed, altitude, columns)
+        notes += _vehicle(vehicle, speed, columns)
     return notes
 
 
-def _vehicle(
-    vehicle: Vehicle, speed: np.ndarray, altitude: np.ndarray, columns: Mapping[str, np.ndarray]
-) -> list[str]:
+def _vehicle(vehicle: Vehicle, speed: np.ndarray, columns: Mapping[str, np.ndarray]) -> list[str]:
     notes = list(vehicle.notes)
     if vehicle.continuum is not None:
         notes.append("The vehicle's own continuum table is held at its first and last row beyond them.")
@@ -98,8 +104,8 @@ def _vehicle(
         share = np.mean(moving & (mach < SLOW_MACH))
         where = "here" if mach.size == 1 else f"at {100 * share:.0f} % of the points"
         notes.append(
-            f"Below Mach {SLOW_MACH:g} ({where}) the Newtonian continuum limit is an extrapolation; give a [continuum] "
-            "table for that part."
+            f"Below Mach {SLOW_MACH:g} ({where}) the Newtonian continuum limit is an extrapolation; give a "
+            "[continuum] table for that part."
         )
     if vehicle.nose_radius is None:
         notes.append("No nose radius: stagnation heating is not computed; give [heating] nose_radius.")
@@ -112,7 +118,8 @@ def _vehicle(
         )
     if np.any(speed >= FAST):
         notes.append(
-            "Shock-layer radiation (Tauber & Sutton 1991) is an equilibrium correlation for 10-16 km/s and nose radii of "
-            "0.3-3 m; between 9 and 10 km/s and above 70 km it is uncertain by a factor of 2 or more (judgement)."
+            "Shock-layer radiation (Tauber & Sutton 1991) is an equilibrium correlation for 10-16 km/s and nose "
+            "radii of 0.3-3 m; between 9 and 10 km/s and above 70 km it is uncertain by a factor of 2 or more "
+            "(judgement)."
         )
     return notes

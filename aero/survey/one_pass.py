@@ -99,8 +99,10 @@ def named_lengths(vehicle: Vehicle) -> dict[str, float]:
 def default_atmosphere(trajectory: Trajectory) -> Atmosphere:
     """Return NRLMSISE-00 at moderate activity where date and place are known, else the 1976 standard."""
     placed = trajectory.latitude is not None and trajectory.longitude is not None
-    return Msis("nrlmsise-00", activity="moderate") if placed and trajectory.utc is not None else (
-        StandardAtmosphere1976()
+    return (
+        Msis("nrlmsise-00", activity="moderate")
+        if placed and trajectory.utc is not None
+        else (StandardAtmosphere1976())
     )
 
 
@@ -226,15 +228,23 @@ def _points(
     for start in range(0, count, BLOCK):
         rows = slice(start, min(start + BLOCK, count))
         part = conditions(block_inputs(trajectory, rows, utc), atmosphere, vehicle, lengths, settings)
-        for name in kept & part.keys():
-            if name not in columns:
-                columns[name] = np.empty(count, dtype=part[name].dtype)
-            columns[name][rows] = part[name]
+        if not columns:
+            columns = _room(part, kept, count)
+        for name, column in columns.items():
+            column[rows] = part[name]
         if progress:
             progress(rows.stop - rows.start)
     if trajectory.time is not None:
         columns["heat_load_J_m2"] = Load.of(trajectory.time, columns["heat_flux_W_m2"]).samples
     return columns
+
+
+def _room(part: dict[str, np.ndarray], kept: set[str], count: int) -> dict[str, np.ndarray]:
+    """Return empty columns for all points: the numbers as rows of one array, which the system hands out at once."""
+    numbers = [name for name in part if name in kept and part[name].dtype == np.float64]
+    room = dict(zip(numbers, np.empty((len(numbers), count)), strict=True))
+    others = [name for name in part if name in kept and name not in room]
+    return room | {name: np.empty(count, dtype=part[name].dtype) for name in others}
 
 
 def _warm_heap() -> None:
@@ -261,13 +271,15 @@ def _frame(columns: dict[str, np.ndarray], trajectory: Trajectory, lengths: dict
         if values is not None:
             known[f"{name}_deg"] = np.degrees(values)
     data: dict[str, object] = {}
+    kind = pd.CategoricalDtype(list(REGIMES), ordered=False)
     for column in point_columns(list(lengths)):
         if column.name == "utc":
             utc = trajectory.utc
             nat = np.broadcast_to(np.datetime64("NaT", "us"), count)
             data["utc"] = nat if utc is None else utc.astype("datetime64[us]")
         elif column.name.startswith("regime."):
-            data[column.name] = pd.Categorical.from_codes(known[column.name], categories=list(REGIMES))
+            codes: np.ndarray[tuple[int], np.dtype[np.int8]] = known[column.name]
+            data[column.name] = pd.Categorical.from_codes(codes, dtype=kind)
         else:
             data[column.name] = known.get(column.name, np.broadcast_to(np.nan, count))
     for name, values in trajectory.extra.items():

@@ -67,17 +67,20 @@ def point(
         raise InputError(f"altitude is {altitude / 1e3:g} km, expected -5 km to 1000 km", source="--altitude")
     if not 0.0 <= speed < 1e5:
         raise InputError(
-            f"speed is {speed:g} m/s, expected 0 to 100 km/s; speeds are relative to the air", source="--speed"
+            f"speed is {speed:g} m/s, expected 0 to 100 km/s; speeds are relative to the air",
+            source="--speed",
         )
     if latitude is not None and not abs(latitude) <= np.pi / 2:
-        raise InputError(f"latitude is {np.degrees(latitude):g} deg, expected -90 to 90 deg", source="--latitude")
+        raise InputError(
+            f"latitude is {np.degrees(latitude):g} deg, expected -90 to 90 deg", source="--latitude"
+        )
     if longitude is not None and not abs(longitude) <= 2 * np.pi:
         raise InputError(
             f"longitude is {np.degrees(longitude):g} deg, expected -360 to 360 deg", source="--longitude"
         )
     from aero.air import StandardAtmosphere1976
 
-    air_model = atmosphere or StandardAtmosphere1976()
+    air_model: Atmosphere = atmosphere or StandardAtmosphere1976()
     chosen = settings or Settings()
     named = dict(lengths or {})
     if vehicle is not None:

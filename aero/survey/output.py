@@ -64,7 +64,9 @@ def _check(path: Path, *, replace: bool, folder: bool) -> None:
     if folder != path.is_dir():
         kind = "a folder" if path.is_dir() else "a file"
         wanted = "folder" if folder else "file"
-        raise InputError(f"is {kind}, expected to write a {wanted}", source=str(path), remedy="choose another name")
+        raise InputError(
+            f"is {kind}, expected to write a {wanted}", source=str(path), remedy="choose another name"
+        )
     if folder and not any(path.iterdir()):
         return
     if not replace:
@@ -81,5 +83,7 @@ def check_target(target: str | Path, *, replace: bool, folder: bool) -> None:
     _check(path, replace=replace, folder=folder)
     if folder and replace and path.is_dir() and any(path.iterdir()) and not (path / "survey.json").is_file():
         raise InputError(
-            "is a folder that holds no survey, so it is not replaced", source=str(path), remedy="choose another name"
+            "is a folder that holds no survey, so it is not replaced",
+            source=str(path),
+            remedy="choose another name",
         )

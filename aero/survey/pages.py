@@ -89,7 +89,9 @@ def figure_makers(survey: Survey, footer: str = "") -> dict[str, Callable[[], Fi
     points, bounds = survey.points, survey.settings.bounds
     segments = survey.segments if len(survey.segments) else None
     makers: dict[str, Callable[[], Figure]] = {
-        "strips": lambda: figure_strips(points, segments, bounds=bounds, lengths=survey.lengths, footer=footer),
+        "strips": lambda: figure_strips(
+            points, segments, bounds=bounds, lengths=survey.lengths, footer=footer
+        ),
         "map": lambda: figure_map(
             points, survey.crossings, bounds=bounds, field=map_field(survey), footer=footer
         ),
@@ -134,7 +136,9 @@ def report_page(survey: Survey, record: Mapping[str, Any], drawn: Mapping[str, s
     sections = [
         Section(
             "Regimes along the flight",
-            pictures=pictures("strips", "One row a length, coloured by regime; numbers are shares of the heat load."),
+            pictures=pictures(
+                "strips", "One row a length, coloured by regime; numbers are shares of the heat load."
+            ),
             sheets=[crossings] if timed else [],
         ),
         Section(
@@ -144,7 +148,8 @@ def report_page(survey: Survey, record: Mapping[str, Any], drawn: Mapping[str, s
             ),
         ),
         Section(
-            "Segments and methods", sheets=[segments, Sheet(methods(survey.segments), "Why.")] if timed else []
+            "Segments and methods",
+            sheets=[segments, Sheet(methods(survey.segments), "Why.")] if timed else [],
         ),
         Section(
             "Drag",
@@ -169,7 +174,9 @@ def report_page(survey: Survey, record: Mapping[str, Any], drawn: Mapping[str, s
         models=models_used(survey),
         notes=survey.notes,
         cautions=CAUTIONS,
-        provenance={k: record[k] for k in ("inputs", "atmosphere", "options", "versions", "vehicle", "digest")},
+        provenance={
+            k: record[k] for k in ("inputs", "atmosphere", "options", "versions", "vehicle", "digest")
+        },
         facts=facts(survey, record),
     )
 
@@ -184,7 +191,12 @@ def facts(survey: Survey, record: Mapping[str, Any]) -> dict[str, str]:
     }
     shown = (
         ("Peak heat flux", "peak_heat_flux_W_m2", "W/m²", "peak_heat_flux_altitude_m"),
-        ("Peak drag deceleration", "peak_drag_deceleration_m_s2", "m/s²", "peak_drag_deceleration_altitude_m"),
+        (
+            "Peak drag deceleration",
+            "peak_drag_deceleration_m_s2",
+            "m/s²",
+            "peak_drag_deceleration_altitude_m",
+        ),
         ("Heat load", "heat_load_J_m2", "J/m²", None),
     )
     results = record["results"]

@@ -35,7 +35,9 @@ def placed(
     if date is not None:
         if trajectory.epoch is not None:
             raise InputError(
-                f"the file states its own epoch, {trajectory.epoch}", source="--date", remedy="drop the option"
+                f"the file states its own epoch, {trajectory.epoch}",
+                source="--date",
+                remedy="drop the option",
             )
         changes["epoch"] = date
     count = trajectory.altitude.size

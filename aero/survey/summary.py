@@ -84,8 +84,10 @@ def _falls(segments: pd.DataFrame, column: str, words: str) -> str:
     if shares.empty:
         return ""
     top = shares[shares >= 0.05].head(3) if (shares >= 0.05).any() else shares.head(1)
-    listed = [f"{_percent(value)} {words if i == 0 else ''} in {_flow(str(regime))}" for i, (regime, value) in
-              enumerate(top.items())]
+    listed = [
+        f"{_percent(value)} {words if i == 0 else ''} in {_flow(str(regime))}"
+        for i, (regime, value) in enumerate(top.items())
+    ]
     return ", ".join(part.replace("  ", " ") for part in listed)
 
 
@@ -101,9 +103,9 @@ def _small(name: str, length: float, segments: pd.DataFrame, crossings: pd.DataF
     cut = crossings[(crossings["length"] == name)]
     if len(set(regimes)) == 1:
         return f"{label} stays in {_flow(regimes[0])} throughout"
-    lowest = cut.loc[cut["altitude_m"].idxmin()]
+    lowest = cut.iloc[int(cut["altitude_m"].to_numpy().argmin())]
     bounds = sorted(cut["bound"].unique())
-    below = [r for r in REGIMES if r in regimes][0]
+    below = next(r for r in REGIMES if r in regimes)
     at = lowest["altitude_m"] / 1e3
     if lowest["bound"] == bounds[0] and below == "continuum":
         return f"{label} is in continuum flow only below {at:.1f} km"

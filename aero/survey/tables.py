@@ -24,7 +24,9 @@ def write_parquet(table: pd.DataFrame, path: Path, progress: Progress | None = N
     arrays = {name: _plain(table[name]) for name in table.columns}
     schema = pa.schema([pa.field(name, _arrow_type(values)) for name, values in arrays.items()])
     names = [f.name for f in schema if pa.types.is_dictionary(f.type)]
-    with pq.ParquetWriter(path, schema, compression="none", use_dictionary=names, write_statistics=False) as out:
+    with pq.ParquetWriter(
+        path, schema, compression="none", use_dictionary=names, write_statistics=False
+    ) as out:
         for start in range(0, max(len(table), 1), BLOCK):
             rows = slice(start, start + BLOCK)
             columns = [_arrow(values, rows, schema.field(i).type) for i, values in enumerate(arrays.values())]
@@ -49,9 +51,15 @@ def write_csv(table: pd.DataFrame, path: Path, progress: Progress | None = None)
 
 def _plain(column: pd.Series) -> np.ndarray | pd.Categorical:
     if isinstance(column.dtype, pd.CategoricalDtype):
-        return column.array
-    values = column.to_numpy()
+        categorical: pd.Categorical = column.array
+        return categorical
+    values: np.ndarray = column.to_numpy()
     return values.astype("datetime64[us]") if values.dtype.kind == "M" else values
+
+
+def _unknown(values: np.ndarray) -> bool:
+    """Whether a column nobody knows: one missing value seen many times (`_frame` in one_pass.py makes them)."""
+    return values.strides == (0,) and values.size > 0 and bool(pd.isna(values[0]))
 
 
 def _arrow_type(values: np.ndarray | pd.Categorical) -> object:
@@ -72,6 +80,8 @@ def _arrow(values: np.ndarray | pd.Categorical, rows: slice, kind: object) -> ob
         indices = pa.array(codes, mask=codes < 0)
         return pa.DictionaryArray.from_arrays(indices, pa.array(list(values.categories), pa.string()))
     part = values[rows]
+    if _unknown(values):
+        return pa.nulls(part.size, kind)
     if part.dtype.kind in "OUT":
         return pa.array([None if v is None or v != v else str(v) for v in part.tolist()], pa.string())
     return pa.array(np.ascontiguousarray(part), kind)
@@ -85,7 +95,11 @@ def _polars(name: str, values: np.ndarray | pd.Categorical, rows: slice) -> obje
         codes = values.codes[rows].astype(np.int64)
         return labels.gather(np.where(codes < 0, len(values.categories), codes)).alias(name)
     part = values[rows]
+    if _unknown(values):
+        return pl.repeat(None, part.size, dtype=pl.Float64, eager=True).alias(name)
     if part.dtype.kind in "OUT":
-        return pl.Series(name, [None if v is None or v != v else str(v) for v in part.tolist()], dtype=pl.String)
+        return pl.Series(
+            name, [None if v is None or v != v else str(v) for v in part.tolist()], dtype=pl.String
+        )
     series = pl.Series(name, np.ascontiguousarray(part))
     return series.fill_nan(None) if part.dtype.kind == "f" else series

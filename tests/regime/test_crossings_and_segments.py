@@ -31,7 +31,7 @@ def crossings_of(
         path,
         lengths,
         DEFAULT_BOUNDS,
-        lambda around, utc: np.full(around.altitude.shape, sigma),
+        lambda around, _utc: np.full(around.altitude.shape, sigma),
         LIMITS,
     )
     return found, path
@@ -139,7 +139,7 @@ def test_a_root_stops_at_a_jump_of_the_model() -> None:
         sampled,
         [length],
         DEFAULT_BOUNDS,
-        lambda around, utc: np.full(around.altitude.shape, 0.2),
+        lambda around, _utc: np.full(around.altitude.shape, 0.2),
         LIMITS,
     )
     assert found.altitude == pytest.approx([123_435.0], abs=2.0)

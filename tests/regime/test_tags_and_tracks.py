@@ -2,6 +2,8 @@
 
 from __future__ import annotations
 
+import itertools
+
 import numpy as np
 import pytest
 from hypothesis import given
@@ -29,7 +31,9 @@ def test_the_package_and_its_function_share_a_name() -> None:
     assert aero.regime.REGIMES == REGIMES  # and still a package
 
 
-@pytest.mark.parametrize("bounds", [(0.1, 0.01, 10), (0.0, 0.1, 10), (0.1, 0.1, 10), (0.1, 10), (0.01, 0.1, np.inf)])
+@pytest.mark.parametrize(
+    "bounds", [(0.1, 0.01, 10), (0.0, 0.1, 10), (0.1, 0.1, 10), (0.1, 10), (0.01, 0.1, np.inf)]
+)
 def test_bounds_that_cannot_be(bounds: tuple[float, ...]) -> None:
     with pytest.raises(InputError, match="three ascending positive"):
         check_bounds(bounds)
@@ -68,7 +72,9 @@ def test_the_integral_is_that_of_the_cubic() -> None:
     for end in (0.3, 1.0, 3.3, 7.0):
         # quadrature piece by piece: an independent route
         cuts = [0.0, *time[(time > 0) & (time < end)], end]
-        expected = sum(quad(lambda t: float(rate(np.array(t))), a, b)[0] for a, b in zip(cuts, cuts[1:], strict=False))
+        expected = sum(
+            quad(lambda t: float(rate(np.array(t))), a, b)[0] for a, b in itertools.pairwise(cuts)
+        )
         assert rate.integral(np.array(end), running) == pytest.approx(expected, rel=1e-12)
 
 

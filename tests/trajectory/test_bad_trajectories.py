@@ -1,5 +1,5 @@
 """Every kind of bad input: one message that says what, where and how to mend it; nothing read."""
-# ruff: noqa: E501  (whole messages in a table)
+
 
 from __future__ import annotations
 

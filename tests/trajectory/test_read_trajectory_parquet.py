@@ -1,5 +1,5 @@
 """Parquet files: types, metadata, pieces, messages."""
-# ruff: noqa: E501  (whole messages in a table)
+
 
 from __future__ import annotations
 

@@ -1,5 +1,5 @@
 """What is written reads back as it was; and the object itself."""
-# ruff: noqa: E501  (whole messages in a table)
+
 
 from __future__ import annotations
 
