@@ -79,6 +79,7 @@ def integrate(
     vertical plane through it, upwards (bank angle 0). A vehicle in vertical flight has no such direction, so
     within 1.1 degrees of the vertical lift fades to 0 in proportion; without that, lift downwards would turn
     over and over at the vertical. DOP853 [HairerNorsettWanner1993].
+    On a flat world without gravity and in exponential air this gives the closed form of [AllenEggers1958].
 
     The flight has left for good when it climbs through `MODEL_TOP`, or through the higher of `CEILING` and
     the starting altitude with the apogee of its drag-free path above `MODEL_TOP` (or none). A skip with
