@@ -85,7 +85,9 @@ def choose(value: str, allowed: Iterable[str], what: str, *, source: str | None 
     if value in names:
         return value
     raise InputError(
-        f"{what} is '{value}', expected one of: {', '.join(names)}", source=source, remedy=nearest(value, names)
+        f"{what} is '{value}', expected one of: {', '.join(names)}",
+        source=source,
+        remedy=nearest(value, names),
     )
 
 

@@ -275,7 +275,9 @@ def utc(text: object, *, source: str | None = None, line: int | None = None) -> 
     shown = str(text).strip()
     match = _UTC.fullmatch(shown)
     error = InputError(
-        f"'{shown}' is not a UTC date, expected ISO 8601 such as '2026-03-01T12:00:00Z'", source=source, line=line
+        f"'{shown}' is not a UTC date, expected ISO 8601 such as '2026-03-01T12:00:00Z'",
+        source=source,
+        line=line,
     )
     if match is None:
         raise error

@@ -10,7 +10,7 @@ import numpy as np
 
 from aero.cli import options as shared
 from aero.cli.point import missing_of
-from aero.cli.show import print_csv, print_json, say
+from aero.cli.show import print_csv, print_json, say, show
 from aero.errors import InputError
 
 MOST_ROWS = 1_000_000
@@ -65,7 +65,7 @@ def command(**options: Any) -> None:
         from aero.cli.text import air_text
 
         say(f"Air: {air_model.description}, {why}; mean free path {options['free_path']}.")
-        say(air_text(columns))
+        show(air_text(columns))
     if options["figure"] is not None:
         say(f"Wrote {options['figure']}.", style=style)
 

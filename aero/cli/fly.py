@@ -9,7 +9,7 @@ import click
 
 from aero.cli import options as shared
 from aero.cli.point import missing_of
-from aero.cli.show import CAUTION, print_csv, print_json, say
+from aero.cli.show import CAUTION, print_csv, print_json, say, show
 from aero.errors import InputError
 
 
@@ -157,7 +157,7 @@ def _show(flight: Any, air_model: Any, why: str, notes: list[str], options: dict
     else:
         from aero.cli.text import flight_text
 
-        say(flight_text(summary))
+        show(flight_text(summary))
     for note in notes:
         say(f"note: {note}", style=style)
     say(CAUTION, style=style)

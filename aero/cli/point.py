@@ -7,7 +7,7 @@ from typing import TYPE_CHECKING, Any
 import click
 
 from aero.cli import options as shared
-from aero.cli.show import CAUTION, print_csv, print_json, say
+from aero.cli.show import CAUTION, print_csv, print_json, say, show
 from aero.errors import InputError
 from aero.units import quantity
 
@@ -89,10 +89,9 @@ def command(**options: Any) -> None:
         from aero.cli.text import condition_text
 
         say(f"Air: {air_model.description}, {why}.")
-        say(condition_text(answer))
-    if style != "table":
-        for note in answer["notes"]:
-            say(f"note: {note}", style=style)
+        show(condition_text(answer))
+    for note in answer["notes"]:
+        say(f"note: {note}", style=style)
     if vehicle is not None:
         say(CAUTION, style=style)
 

@@ -6,6 +6,7 @@ import csv
 import io
 import json
 import sys
+import textwrap
 from collections.abc import Sequence
 from typing import Any
 
@@ -13,6 +14,7 @@ import click
 
 from aero.survey.plain import plain_json
 
+WIDTH = 100  # columns of prose and tables
 CAUTION = (
     "Screening results: not a basis for sizing thermal protection, clearing debris casualty risk or a "
     "licence; those need qualified practice and the authority concerned."
@@ -35,8 +37,17 @@ def print_csv(header: Sequence[str], rows: Sequence[Sequence[Any]]) -> None:
 
 
 def say(text: str, *, style: str = "table") -> None:
-    """Print prose: on stdout beside a table, on stderr where stdout holds only data."""
-    click.echo(text, err=style != "table")
+    """Print a paragraph, wrapped: on stdout beside a table, on stderr where stdout holds only data."""
+    hang = "      " if text.startswith("note: ") else ""
+    folded = textwrap.fill(
+        text, WIDTH, subsequent_indent=hang, break_long_words=False, break_on_hyphens=False
+    )
+    click.echo(folded, err=style != "table")
+
+
+def show(text: str) -> None:
+    """Print a result as it is."""
+    click.echo(text)
 
 
 def is_terminal() -> bool:

@@ -7,7 +7,7 @@ from typing import Any
 import click
 
 from aero.cli import options as shared
-from aero.cli.show import CAUTION, is_terminal, print_csv, print_json, say
+from aero.cli.show import CAUTION, is_terminal, print_csv, print_json, say, show
 from aero.errors import InputError
 
 
@@ -82,7 +82,7 @@ def run(**options: Any) -> None:
             figures=options["figures"],
             progress=lambda _, step: advance(step),
         )
-    show(result, files, why, options)
+    report(result, files, why, options)
 
 
 def trajectory_missing(trajectory: Any) -> str | None:
@@ -129,7 +129,7 @@ class bar:  # noqa: N801 - used like a function
             self.progress.stop()
 
 
-def show(result: Any, files: list[str], why: str, options: dict[str, Any]) -> None:
+def report(result: Any, files: list[str], why: str, options: dict[str, Any]) -> None:
     """Print what was found and what was written."""
     style = options["style"]
     out = str(options["out"]).rstrip("/")
@@ -147,10 +147,14 @@ def show(result: Any, files: list[str], why: str, options: dict[str, Any]) -> No
     else:
         from aero.cli.text import crossings_text, segments_text
 
-        say(f"\n{result.summary}\n")
+        show("")
+        say(result.summary)
+        show("")
         if not result.segments.empty:
-            say(crossings_text(result.crossings))
-            say(segments_text(result.segments))
+            show(crossings_text(result.crossings))
+            show("")
+            show(segments_text(result.segments))
+            show("")
     for note in result.notes:
         say(f"note: {note}", style=style)
     say(CAUTION, style=style)

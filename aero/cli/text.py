@@ -43,7 +43,6 @@ def condition_text(answer: Mapping[str, Any]) -> str:
     for key, title in (("drag", "Drag"), ("heating", "Stagnation heating")):
         if key in answer:
             parts += [f"\n{title}", facts_text(_known(answer[key]))]
-    parts += [f"note: {note}" for note in answer["notes"]]
     return "\n".join(parts)
 
 

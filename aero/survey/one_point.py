@@ -13,6 +13,7 @@ from aero.errors import InputError
 from aero.regime import REGIMES
 from aero.survey.chain import Inputs, conditions
 from aero.survey.notes import point_notes
+from aero.survey.place import check_angle
 from aero.survey.settings import Settings
 
 
@@ -70,14 +71,8 @@ def point(
             f"speed is {speed:g} m/s, expected 0 to 100 km/s; speeds are relative to the air",
             source="--speed",
         )
-    if latitude is not None and not abs(latitude) <= np.pi / 2:
-        raise InputError(
-            f"latitude is {np.degrees(latitude):g} deg, expected -90 to 90 deg", source="--latitude"
-        )
-    if longitude is not None and not abs(longitude) <= 2 * np.pi:
-        raise InputError(
-            f"longitude is {np.degrees(longitude):g} deg, expected -360 to 360 deg", source="--longitude"
-        )
+    check_angle("latitude", latitude)
+    check_angle("longitude", longitude)
     from aero.air import StandardAtmosphere1976
 
     air_model: Atmosphere = atmosphere or StandardAtmosphere1976()

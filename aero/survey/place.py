@@ -9,6 +9,17 @@ import numpy as np
 from aero.errors import InputError
 from aero.trajectory import Trajectory
 
+LIMITS = {"latitude": 90.0, "longitude": 360.0}  # deg
+
+
+def check_angle(name: str, value: float | None) -> None:
+    """Raise an InputError for a latitude or longitude [rad] that cannot be; None passes."""
+    if value is not None and not abs(np.degrees(value)) <= LIMITS[name] + 1e-9:
+        limit = f"{LIMITS[name]:g}"
+        raise InputError(
+            f"{name} is {np.degrees(value):g} deg, expected -{limit} to {limit} deg", source=f"--{name}"
+        )
+
 
 def placed(
     trajectory: Trajectory,
@@ -46,5 +57,6 @@ def placed(
             continue
         if getattr(trajectory, name) is not None:
             raise InputError(f"the file states its own {name}", source=f"--{name}", remedy="drop the option")
+        check_angle(name, value)
         changes[name] = np.full(count, value)
     return dataclasses.replace(trajectory, **changes) if changes else trajectory  # type: ignore[arg-type]

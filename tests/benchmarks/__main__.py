@@ -41,12 +41,18 @@ def main() -> None:
         air = piece("standard_air", folder, rows)
         table.append(("1976 standard, air alone", f"{million / air['seconds']:.2f} M points/s", "1"))
         physics = piece("physics", folder, rows)
-        table.append(("physics without the atmosphere", f"{million / physics['seconds']:.2f} M points/s", "1.5"))
+        table.append(
+            ("physics without the atmosphere", f"{million / physics['seconds']:.2f} M points/s", "1.5")
+        )
         standard = piece("survey_standard", folder, rows)
         rate = million / standard["seconds"]
         table.append(("survey, 1976 standard, Parquet in and out, one core", f"{rate:.2f} M points/s", "0.8"))
         table.append(
-            ("  memory above imports", f"{standard['megabytes'] / million:.0f} MB a million points", "at most 600")
+            (
+                "  memory above imports",
+                f"{standard['megabytes'] / million:.0f} MB a million points",
+                "at most 600",
+            )
         )
         bare = piece("bare_msis", folder, rows)
         table.append(("one bare pymsis.calculate call", f"{bare['seconds']:.2f} s", ""))
@@ -59,21 +65,32 @@ def main() -> None:
             )
         )
         both = piece("survey_msis", folder, rows, one_core=False)
+        table.append(("  the same, both cores", f"{both['seconds'] / bare['seconds']:.2f} x", ""))
         table.append(
-            ("  the same, both cores", f"{both['seconds'] / bare['seconds']:.2f} x", "")
-        )
-        table.append(
-            ("  memory above imports", f"{msis['megabytes'] / million:.0f} MB a million points", "at most 600")
+            (
+                "  memory above imports",
+                f"{msis['megabytes'] / million:.0f} MB a million points",
+                "at most 600",
+            )
         )
         ours, theirs = piece("csv_ours", folder, rows), piece("csv_pandas", folder, rows)
         ratio = theirs["seconds_per_row"] / ours["seconds_per_row"]
-        table.append(("points.csv against DataFrame.to_csv, one core", f"{ratio:.0f} x faster", "at least 10"))
+        table.append(
+            ("points.csv against DataFrame.to_csv, one core", f"{ratio:.0f} x faster", "at least 10")
+        )
         figures = piece("figures", folder, rows)
         table.append((f"all figures and the page of {rows:,} points", f"{figures['seconds']:.1f} s", ""))
         loop, vector = piece("script_loop", folder, rows), piece("script_pandas", folder, rows)
-        for label, plain in (("a loop, one atmosphere call a point", loop), ("pandas, one pymsis call", vector)):
+        for label, plain in (
+            ("a loop, one atmosphere call a point", loop),
+            ("pandas, one pymsis call", vector),
+        ):
             table.append(
-                (f"plain script: {label}", f"{1e-6 / plain['seconds_per_row']:.3f} M points/s", "for comparison")
+                (
+                    f"plain script: {label}",
+                    f"{1e-6 / plain['seconds_per_row']:.3f} M points/s",
+                    "for comparison",
+                )
             )
         table.append(
             ("  survey with NRLMSISE-00 beside them", f"{million / msis['seconds']:.3f} M points/s", "")

@@ -54,7 +54,9 @@ def make(folder: Path, rows: int) -> float:
     import pandas as pd
 
     columns = flight(rows)
-    pd.DataFrame({k: columns[k] for k in ("time_s", "altitude_m", "speed_m_s")}).to_parquet(folder / "plain.parquet")
+    pd.DataFrame({k: columns[k] for k in ("time_s", "altitude_m", "speed_m_s")}).to_parquet(
+        folder / "plain.parquet"
+    )
     utc = EPOCH + (columns.pop("time_s") * 1e6).astype("timedelta64[us]")
     pd.DataFrame({"time": utc, **columns}).to_parquet(folder / "flight.parquet")
     (folder / "body.toml").write_text(BODY)
@@ -203,7 +205,9 @@ def script_loop(_folder: Path, _rows: int) -> float:
         )[0]
         number = float(np.nansum(air[1:9]))
         kn = 1.0 / (math.sqrt(2.0) * math.pi * 3.65e-10**2 * number) / 0.9
-        fraction = math.sin(math.pi * (3 / 8 + math.log10(kn) / 8)) ** 2 if 1e-3 < kn < 10 else float(kn >= 10)
+        fraction = (
+            math.sin(math.pi * (3 / 8 + math.log10(kn) / 8)) ** 2 if 1e-3 < kn < 10 else float(kn >= 10)
+        )
         drag = 1.3 + fraction * (2.1 - 1.3)
         heat = 1.7415e-4 * math.sqrt(air[0] / 0.27) * columns["speed_m_s"][i] ** 3
         answers.append((number, kn, drag, heat))
@@ -266,8 +270,6 @@ def main() -> None:
     function, really = PIECES[name]
     if name.startswith("survey"):
         # Libraries are loaded by a small survey first, so that time and memory are the work's own.
-        import aero.survey.one_pass
-        import aero.survey.write
 
         small = folder / "small"
         small.mkdir(exist_ok=True)

@@ -173,7 +173,9 @@ def test_own_columns_are_carried_through(entry: Trajectory, body: Vehicle) -> No
 
 
 def test_msis_needs_place_and_date(entry: Trajectory, body: Vehicle) -> None:
-    with pytest.raises(InputError, match=r"has no latitude and no longitude and no date, which nrlmsise-00 needs"):
+    with pytest.raises(
+        InputError, match=r"has no latitude and no longitude and no date, which nrlmsise-00 needs"
+    ):
         aero.survey(entry, body, atmosphere=Msis("nrlmsise-00"))
 
 
