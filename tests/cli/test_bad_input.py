@@ -19,6 +19,9 @@ diameter = "0.9 m"
 """
 FLIGHT = "time [s],altitude [km],speed [m/s]\n0,120,7500\n1,119,7500\n2,118,7490\n"
 
+PLACE = ["--date", "2026-03-01", "--latitude", "0deg", "--longitude", "0deg"]
+FLY = ["fly", "--ballistic-coefficient", "50kg/m2", "--altitude", "120km", "--speed", "7.6km/s"]
+
 # name -> (trajectory text, vehicle text, further options, what the message must hold)
 SURVEYS: dict[str, tuple[str | None, str | None, list[str], list[str]]] = {
     "no such trajectory": (None, VEHICLE, [], ["flight.csv", "no such file"]),

@@ -72,9 +72,7 @@ def test_the_integral_is_that_of_the_cubic() -> None:
     for end in (0.3, 1.0, 3.3, 7.0):
         # quadrature piece by piece: an independent route
         cuts = [0.0, *time[(time > 0) & (time < end)], end]
-        expected = sum(
-            quad(lambda t: float(rate(np.array(t))), a, b)[0] for a, b in itertools.pairwise(cuts)
-        )
+        expected = sum(quad(lambda t: float(rate(np.array(t))), a, b)[0] for a, b in itertools.pairwise(cuts))
         assert rate.integral(np.array(end), running) == pytest.approx(expected, rel=1e-12)
 
 

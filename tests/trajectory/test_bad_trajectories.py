@@ -1,6 +1,5 @@
 """Every kind of bad input: one message that says what, where and how to mend it; nothing read."""
 
-
 from __future__ import annotations
 
 import pickle

@@ -1,6 +1,5 @@
 """Parquet files: types, metadata, pieces, messages."""
 
-
 from __future__ import annotations
 
 from pathlib import Path

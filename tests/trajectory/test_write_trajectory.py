@@ -1,6 +1,5 @@
 """What is written reads back as it was; and the object itself."""
 
-
 from __future__ import annotations
 
 from pathlib import Path
