@@ -1,23 +1,35 @@
 """Altitude, place and date in, the state of the air out.
 
 `ATMOSPHERES` lists the models by name; `TableAtmosphere` reads the user's own table. All answer `.at(...)`
-with an `Air`. Nothing heavy is imported before a model that needs it is asked.
+with an `Air`. Names are imported when first used: a model that is not asked costs nothing.
 """
 
 from __future__ import annotations
 
-from collections.abc import Callable
-from dataclasses import dataclass
-from functools import partial
-from typing import Any
+import importlib
+from typing import TYPE_CHECKING
 
-from aero.air.activity import ACTIVITIES, LEVELS
-from aero.air.msis import Msis
-from aero.air.space_weather import read_space_weather
-from aero.air.standard_1976 import StandardAtmosphere1976
 from aero.air.state import MOLAR_MASS, MOLECULE_MASS, SPECIES, Air, Atmosphere
-from aero.air.table import INTERPOLATIONS, TableAtmosphere
 
+if TYPE_CHECKING:
+    from aero.air.activity import ACTIVITIES, LEVELS
+    from aero.air.msis import Msis
+    from aero.air.registry import ATMOSPHERES, Model
+    from aero.air.space_weather import read_space_weather
+    from aero.air.standard_1976 import StandardAtmosphere1976
+    from aero.air.table import INTERPOLATIONS, TableAtmosphere
+
+_HOME = {
+    "ACTIVITIES": "activity",
+    "ATMOSPHERES": "registry",
+    "INTERPOLATIONS": "table",
+    "LEVELS": "activity",
+    "Model": "registry",
+    "Msis": "msis",
+    "StandardAtmosphere1976": "standard_1976",
+    "TableAtmosphere": "table",
+    "read_space_weather": "space_weather",
+}
 __all__ = [
     "ACTIVITIES",
     "ATMOSPHERES",
@@ -36,45 +48,7 @@ __all__ = [
 ]
 
 
-@dataclass(frozen=True)
-class Model:
-    """An entry of `ATMOSPHERES`.
-
-    Attributes
-    ----------
-    description : str
-        One line for help and error texts.
-    build : callable
-        Makes the atmosphere; MSIS takes activity, f107, f107a, ap and space_weather.
-    needs_place : bool
-        Whether latitude, longitude and date must be given to `.at`.
-    altitude_range : (float, float) [m]
-        Where `.at` answers; outside it raises ValueError.
-    """
-
-    description: str
-    build: Callable[..., Any]
-    needs_place: bool
-    altitude_range: tuple[float, float]
-
-
-ATMOSPHERES: dict[str, Model] = {
-    "standard-1976": Model(
-        "U.S. Standard Atmosphere 1976, -5 to 1000 km: one mean profile, no place or date",
-        StandardAtmosphere1976,
-        StandardAtmosphere1976.needs_place,
-        StandardAtmosphere1976.altitude_range,
-    ),
-    "nrlmsise-00": Model(
-        "NRLMSISE-00, 0 to 1000 km: place, date and solar activity",
-        partial(Msis, "nrlmsise-00"),
-        Msis.needs_place,
-        Msis.altitude_range,
-    ),
-    "msis-2.1": Model(
-        "NRLMSIS 2.1, 0 to 1000 km: place, date and solar activity; 11-14 % thinner at 80-90 and 120-200 km",
-        partial(Msis, "msis-2.1"),
-        Msis.needs_place,
-        Msis.altitude_range,
-    ),
-}
+def __getattr__(name: str) -> object:
+    if name not in _HOME:
+        raise AttributeError(f"module 'aero.air' has no attribute '{name}'")
+    return getattr(importlib.import_module(f"aero.air.{_HOME[name]}"), name)

@@ -26,13 +26,7 @@ MOST_ROWS = 1_000_000
 @click.option("--step", type=shared.Quantity("length", "10km"), required=True, help="Altitude step.")
 @shared.place_options
 @shared.atmosphere_options
-@click.option(
-    "--free-path",
-    type=click.Choice(["hard-sphere", "vhs", "viscosity"]),
-    default="hard-sphere",
-    show_default=True,
-    help="Definition of the mean free path.",
-)
+@shared.free_path_option
 @click.option("--figure", type=click.Path(), metavar="FILE", help="Draw it as .svg or .png.")
 @shared.replace_option
 @shared.format_option("table", "json", "csv")

@@ -18,6 +18,9 @@ if TYPE_CHECKING:
 Decorator = Callable[[Callable[..., Any]], Callable[..., Any]]
 ATMOSPHERE_NAMES = ("standard-1976", "nrlmsise-00", "msis-2.1")
 PLACED = ("nrlmsise-00", "msis-2.1")
+ACTIVITY_NAMES = ("low", "moderate", "high", "observed")
+FREE_PATH_NAMES = ("hard-sphere", "vhs", "viscosity")
+CONVECTIVE_NAMES = ("sutton-graves", "detra-kemp-riddell", "brandis-johnston")
 
 
 class Quantity(click.ParamType[float]):
@@ -134,7 +137,7 @@ atmosphere_options = together(
     ),
     click.option(
         "--activity",
-        type=click.Choice(["low", "moderate", "high", "observed"]),
+        type=click.Choice(ACTIVITY_NAMES),
         help="Solar and geomagnetic activity for the empirical atmospheres. Default: moderate.",
     ),
     click.option("--f107", type=float, help="F10.7 of the day before, in solar flux units (sfu)."),
@@ -146,14 +149,15 @@ atmosphere_options = together(
         help="A file of daily indices, as docs/formats.md says.",
     ),
 )
+free_path_option = click.option(
+    "--free-path",
+    type=click.Choice(FREE_PATH_NAMES),
+    default="hard-sphere",
+    show_default=True,
+    help="Definition of the mean free path shown and used for the tags.",
+)
 model_options = together(
-    click.option(
-        "--free-path",
-        type=click.Choice(["hard-sphere", "vhs", "viscosity"]),
-        default="hard-sphere",
-        show_default=True,
-        help="Definition of the mean free path shown and used for the tags.",
-    ),
+    free_path_option,
     click.option(
         "--bounds",
         type=Bounds(),
@@ -169,7 +173,7 @@ model_options = together(
         metavar="NAME",
         default="sutton-graves",
         show_default=True,
-        help="Continuum stagnation heating: sutton-graves, detra-kemp-riddell, brandis-johnston.",
+        help=f"Continuum stagnation heating: {', '.join(CONVECTIVE_NAMES)}.",
     ),
 )
 replace_option = click.option("--replace", is_flag=True, help="Replace an existing output.")

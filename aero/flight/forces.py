@@ -126,7 +126,8 @@ def vehicle_loads(
     heat_flux : callable or None
         (air, speed) -> stagnation heat flux [W/m2]; None without a nose radius.
     """
-    from aero.survey.chain import Inputs, conditions
+    from aero.survey.chain import conditions
+    from aero.survey.inputs import Inputs
     from aero.survey.settings import Settings
 
     chosen = Settings() if settings is None else settings

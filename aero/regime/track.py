@@ -7,7 +7,7 @@ in steps stays monotone between them.
 from __future__ import annotations
 
 from dataclasses import dataclass
-from typing import NamedTuple
+from typing import TYPE_CHECKING, NamedTuple
 
 import numpy as np
 from numpy.typing import NDArray
@@ -15,7 +15,9 @@ from numpy.typing import NDArray
 from aero.air.cubic import monotone_slopes, stencil_slopes
 from aero.air.state import Air, Atmosphere
 from aero.arrays import Floats, Times
-from aero.trajectory import Trajectory
+
+if TYPE_CHECKING:
+    from aero.trajectory import Trajectory
 
 
 @dataclass(frozen=True, eq=False)

@@ -2,75 +2,32 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
-from dataclasses import dataclass
+from collections.abc import Mapping
+from typing import TYPE_CHECKING
 
 import numpy as np
 
 from aero.air.state import SPECIES, Air, Atmosphere
-from aero.arrays import Floats, Times
-from aero.body import Vehicle
-from aero.body.surface import accommodation, accommodation_uncertainty
-from aero.bridge import Bridge, blend, bridge_for, similarity_number
-from aero.bridge.functions import Fraction
-from aero.bridge.uncertainty import drag_band, heat_band
-from aero.errors import InputError
-from aero.force import continuum, free_molecular
+from aero.arrays import Floats
 from aero.gas import (
     Flow,
     emitted_free_path,
     flow,
     free_path_behind_shock,
-    free_path_uncertainty,
     mean_free_path,
     mixture_omega,
     normal_shock,
     stand_off,
 )
-from aero.heat import stagnation
 from aero.regime import regime_index
+from aero.survey.inputs import Inputs, air_at
 from aero.survey.settings import Settings
+
+if TYPE_CHECKING:
+    from aero.body import Vehicle
 
 BARE_WALL = 300.0  # K, wall of the emitted Knudsen number where no vehicle states one
 BARE_ACCOMMODATION = 1.0
-HEAT = (
-    "heat_flux_W_m2",
-    "heat_flux_free_molecular_W_m2",
-    "heat_flux_continuum_W_m2",
-    "heat_flux_radiative_W_m2",
-    "heat_flux_low_W_m2",
-    "heat_flux_high_W_m2",
-)
-
-
-@dataclass(frozen=True, eq=False)
-class Inputs:
-    """What is given at each of n points.
-
-    Attributes
-    ----------
-    altitude, speed : (n,) arrays [m], [m/s]
-    latitude, longitude : (n,) arrays or None [rad]
-    utc : (n,) array of datetimes or None
-    angle_of_attack : (n,) array or None [rad]
-    wall_temperature : (n,) array or None [K]
-    """
-
-    altitude: Floats
-    speed: Floats
-    latitude: Floats | None = None
-    longitude: Floats | None = None
-    utc: Times | None = None
-    angle_of_attack: Floats | None = None
-    wall_temperature: Floats | None = None
-
-
-def air_at(inputs: Inputs, atmosphere: Atmosphere) -> Air:
-    """Return the air at the points."""
-    if not atmosphere.needs_place:
-        return atmosphere.at(inputs.altitude)
-    degrees = [None if a is None else np.degrees(a) for a in (inputs.latitude, inputs.longitude)]
-    return atmosphere.at(inputs.altitude, latitude_deg=degrees[0], longitude_deg=degrees[1], utc=inputs.utc)
 
 
 def conditions(
@@ -109,8 +66,12 @@ def conditions(
         accommodated: Floats | float = BARE_ACCOMMODATION
         nose = None
     else:
+        # imported here: a condition without a vehicle needs none of it and starts faster
+        from aero.body.surface import accommodation
+        from aero.survey.vehicle_columns import vehicle_columns
+
         accommodated = accommodation(vehicle.surface, air)
-        columns |= _vehicle_columns(
+        columns |= vehicle_columns(
             inputs, air, moving, path, accommodated, vehicle, settings, density_uncertainty
         )
         wall = columns["wall_temperature_K"]
@@ -174,155 +135,3 @@ def _length_columns(
         columns[f"regime.{name}"] = regime_index(columns[f"knudsen.{name}"], settings.bounds)
         columns[f"knudsen_shock.{name}"] = behind / length
         columns[f"knudsen_emitted.{name}"] = emitted / length
-
-
-def wall_choice(inputs: Inputs, vehicle: Vehicle, settings: Settings) -> Floats | float | str:
-    """Return the wall temperature that rules: the option, else the trajectory's column, else the vehicle's."""
-    if settings.wall is not None:
-        return settings.wall
-    if inputs.wall_temperature is not None:
-        return inputs.wall_temperature
-    return "radiative" if vehicle.surface.temperature is None else vehicle.surface.temperature
-
-
-def _vehicle_columns(
-    inputs: Inputs,
-    air: Air,
-    moving: Flow,
-    path: Floats,
-    accommodated: Floats | float,
-    vehicle: Vehicle,
-    settings: Settings,
-    density_uncertainty: tuple[Floats, Floats],
-) -> dict[str, np.ndarray]:
-    """Return the columns of heating, then of drag, which needs the wall temperature that heating leaves."""
-    spread = accommodation_uncertainty(air.altitude)
-    wall, columns = _heat_columns(
-        air,
-        moving,
-        accommodated,
-        wall_choice(inputs, vehicle, settings),
-        vehicle,
-        settings,
-        density_uncertainty,
-        spread,
-    )
-    columns["wall_temperature_K"] = wall
-    angle = vehicle.angle_of_attack if inputs.angle_of_attack is None else inputs.angle_of_attack
-    across = vehicle.length_across
-    knudsen = path / across
-    free = free_molecular(vehicle, air, moving, wall, accommodated, angle)
-    dense = continuum(
-        vehicle,
-        air,
-        moving,
-        path / vehicle.reference_length,
-        angle,
-        real_gas=settings.real_gas,
-        wall_temperature=wall,
-    )
-    bridge = bridge_for(vehicle, "drag")
-    emitted = None
-    if "knudsen_emitted" in (bridge.similarity, bridge_for(vehicle, "lift").similarity):
-        emitted = emitted_free_path(air, moving, wall, accommodated) / across
-
-    def number(similarity: str) -> Floats:
-        return similarity_number(
-            similarity,
-            knudsen=knudsen,
-            knudsen_emitted=emitted,
-            cheng=moving.cheng_per_m / across,
-            reynolds_stagnation=moving.reynolds_stagnation_per_m * across,
-        )
-
-    similar = number(bridge.similarity)
-    fraction = bridge(similar)
-    drag = blend(dense.drag, free.drag, fraction.value)
-    band = drag_band(
-        drag,
-        dense.drag,
-        free,
-        bridge,
-        similar,
-        density_sigma=density_uncertainty,
-        cross_section=free_path_uncertainty(air),
-        accommodation=spread,
-        wall_temperature=wall,
-        energy_accommodation=accommodated,
-        fraction=fraction,
-    )
-    moves = moving.speed > 0.0
-    loading = vehicle.mass / vehicle.reference_area
-    columns["drag_coefficient"] = drag
-    columns["drag_coefficient_free_molecular"] = free.drag
-    columns["drag_coefficient_continuum"] = dense.drag
-    columns["drag_bridge"] = np.where(moves, fraction.value, np.nan)
-    columns["drag_coefficient_low"] = band.low
-    columns["drag_coefficient_high"] = band.high
-    columns["lift_coefficient"] = _lift(vehicle, free.lift, dense.lift, bridge, fraction, number)
-    columns["ballistic_coefficient_kg_m2"] = loading / drag
-    columns["drag_deceleration_m_s2"] = np.where(moves, moving.dynamic_pressure * drag / loading, 0.0)
-    return columns
-
-
-def _lift(
-    vehicle: Vehicle,
-    free: Floats,
-    dense: Floats,
-    drag_bridge: Bridge,
-    drag_fraction: Fraction,
-    number: Callable[[str], Floats],
-) -> Floats:
-    bridge = bridge_for(vehicle, "lift")
-    same = (bridge.function, bridge.similarity, bridge.centre, bridge.width) == (
-        drag_bridge.function,
-        drag_bridge.similarity,
-        drag_bridge.centre,
-        drag_bridge.width,
-    )
-    fraction = drag_fraction if same else bridge(number(bridge.similarity))
-    return blend(dense, free, fraction.value)
-
-
-def _heat_columns(
-    air: Air,
-    moving: Flow,
-    accommodated: Floats | float,
-    wall: Floats | float | str,
-    vehicle: Vehicle,
-    settings: Settings,
-    density_uncertainty: tuple[Floats, Floats],
-    spread: Floats,
-) -> tuple[Floats, dict[str, np.ndarray]]:
-    """Return the wall temperature and the columns of heating, NaN where the vehicle has no nose radius."""
-    heat_bridge = bridge_for(vehicle, "heating")
-    heat = stagnation(
-        vehicle,
-        air,
-        moving,
-        accommodated,
-        wall,
-        correlation=settings.convective,
-        exponent=heat_bridge.exponent,
-    )
-    if heat is None:
-        if isinstance(wall, str):
-            raise InputError(
-                "a radiative wall temperature needs a nose radius, and the vehicle has none",
-                source=vehicle.source or "vehicle",
-                remedy="give [heating] nose_radius or a wall temperature",
-            )
-        nothing = np.full_like(air.altitude, np.nan)
-        return np.broadcast_to(np.asarray(wall, dtype=np.float64), air.altitude.shape), dict.fromkeys(
-            HEAT, nothing
-        )
-    band = heat_band(
-        heat,
-        heat_bridge,
-        moving.speed,
-        density_sigma=density_uncertainty,
-        accommodation=accommodated,
-        accommodation_sigma=spread,
-    )
-    values = (heat.total, heat.free_molecular, heat.continuum, heat.radiative, band.low, band.high)
-    return heat.wall_temperature, dict(zip(HEAT, values, strict=True))

@@ -8,7 +8,8 @@ from typing import TYPE_CHECKING
 import numpy as np
 
 from aero.arrays import Floats
-from aero.survey.chain import Inputs, conditions
+from aero.survey.chain import conditions
+from aero.survey.inputs import Inputs
 
 if TYPE_CHECKING:
     from aero.survey.one_pass import Survey

@@ -3,13 +3,16 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
+from typing import TYPE_CHECKING
 
 import numpy as np
 
 from aero.air.state import Atmosphere
-from aero.body import Vehicle
 from aero.survey.settings import Settings
-from aero.trajectory import Trajectory
+
+if TYPE_CHECKING:
+    from aero.body import Vehicle
+    from aero.trajectory import Trajectory
 
 FAST = 9e3  # m/s, where shock-layer radiation begins to matter
 SLOW_MACH = 2.0  # below it the Newtonian limit is an extrapolation

@@ -17,8 +17,9 @@ from aero.errors import InputError
 from aero.gas import free_path_uncertainty
 from aero.regime import REGIMES, Crossings, Cuts, Track, cut_segments, find_crossings
 from aero.regime.track import Cubic, clock
-from aero.survey.chain import Inputs, conditions
+from aero.survey.chain import conditions
 from aero.survey.columns import CROSSING_COLUMNS, SEGMENT_COLUMNS, free_name, point_columns
+from aero.survey.inputs import Inputs
 from aero.survey.loads import Load, share
 from aero.survey.methods import segment_methods
 from aero.survey.notes import survey_notes

@@ -3,18 +3,21 @@
 from __future__ import annotations
 
 from collections.abc import Mapping
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 import numpy as np
 
 from aero.air.state import SPECIES, Atmosphere
-from aero.body import Vehicle
 from aero.errors import InputError
 from aero.regime import REGIMES
-from aero.survey.chain import Inputs, conditions
+from aero.survey.chain import conditions
+from aero.survey.inputs import Inputs
 from aero.survey.notes import point_notes
 from aero.survey.place import check_angle
 from aero.survey.settings import Settings
+
+if TYPE_CHECKING:
+    from aero.body import Vehicle
 
 
 def point(

@@ -3,11 +3,14 @@
 from __future__ import annotations
 
 import dataclasses
+from typing import TYPE_CHECKING
 
 import numpy as np
 
 from aero.errors import InputError
-from aero.trajectory import Trajectory
+
+if TYPE_CHECKING:
+    from aero.trajectory import Trajectory
 
 LIMITS = {"latitude": 90.0, "longitude": 360.0}  # deg
 

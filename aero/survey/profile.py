@@ -7,7 +7,7 @@ import numpy as np
 from aero.air.state import SPECIES, Atmosphere
 from aero.arrays import Floats
 from aero.gas import flow, mean_free_path
-from aero.survey.chain import Inputs, air_at
+from aero.survey.inputs import Inputs, air_at
 
 
 def profile(

@@ -6,7 +6,6 @@ from dataclasses import dataclass
 
 from aero.errors import InputError, choose
 from aero.gas import FREE_PATHS
-from aero.heat import CONVECTIVE
 from aero.regime import DEFAULT_BOUNDS, check_bounds
 
 
@@ -38,7 +37,11 @@ class Settings:
     def __post_init__(self) -> None:
         object.__setattr__(self, "bounds", check_bounds(self.bounds))
         choose(self.free_path, FREE_PATHS, "free path")
-        choose(self.convective, CONVECTIVE, "convective heating")
+        if self.convective != Settings.convective:
+            # imported here: the default needs no check, and a condition without a vehicle starts faster
+            from aero.heat import CONVECTIVE
+
+            choose(self.convective, CONVECTIVE, "convective heating")
         if isinstance(self.wall, str):
             choose(self.wall, ["radiative"], "wall temperature")
         elif self.wall is not None and not 1.0 <= self.wall <= 5000.0:

@@ -91,7 +91,8 @@ class Known:
 
 def physics(folder: Path, rows: int) -> float:
     """Time the chain of the survey on air that is ready."""
-    from aero.survey.chain import Inputs, conditions
+    from aero.survey.chain import conditions
+    from aero.survey.inputs import Inputs
     from aero.survey.settings import Settings
 
     _, body = read(folder, place=False)

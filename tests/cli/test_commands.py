@@ -180,6 +180,20 @@ def test_start_imports_only_what_it_needs() -> None:
         assert done.stderr.strip().endswith("[]"), done.stderr
 
 
+def test_option_texts_name_every_model() -> None:
+    # the command line keeps names of its own so that help needs no model; here they are held to the registries
+    from aero.air import ACTIVITIES, ATMOSPHERES
+    from aero.cli import options
+    from aero.gas import FREE_PATHS
+    from aero.heat import CONVECTIVE
+
+    assert list(options.ATMOSPHERE_NAMES) == list(ATMOSPHERES)
+    assert set(options.PLACED) == {name for name, model in ATMOSPHERES.items() if model.needs_place}
+    assert list(options.ACTIVITY_NAMES) == list(ACTIVITIES)
+    assert list(options.FREE_PATH_NAMES) == list(FREE_PATHS)
+    assert list(options.CONVECTIVE_NAMES) == list(CONVECTIVE)
+
+
 def test_a_closed_pipe_is_no_error(marram: str) -> None:
     import subprocess
 

@@ -1,0 +1,40 @@
+"""What is given at each point, before anything is computed."""
+
+from __future__ import annotations
+
+from dataclasses import dataclass
+
+import numpy as np
+
+from aero.air.state import Air, Atmosphere
+from aero.arrays import Floats, Times
+
+
+@dataclass(frozen=True, eq=False)
+class Inputs:
+    """What is given at each of n points.
+
+    Attributes
+    ----------
+    altitude, speed : (n,) arrays [m], [m/s]
+    latitude, longitude : (n,) arrays or None [rad]
+    utc : (n,) array of datetimes or None
+    angle_of_attack : (n,) array or None [rad]
+    wall_temperature : (n,) array or None [K]
+    """
+
+    altitude: Floats
+    speed: Floats
+    latitude: Floats | None = None
+    longitude: Floats | None = None
+    utc: Times | None = None
+    angle_of_attack: Floats | None = None
+    wall_temperature: Floats | None = None
+
+
+def air_at(inputs: Inputs, atmosphere: Atmosphere) -> Air:
+    """Return the air at the points."""
+    if not atmosphere.needs_place:
+        return atmosphere.at(inputs.altitude)
+    degrees = [None if a is None else np.degrees(a) for a in (inputs.latitude, inputs.longitude)]
+    return atmosphere.at(inputs.altitude, latitude_deg=degrees[0], longitude_deg=degrees[1], utc=inputs.utc)
