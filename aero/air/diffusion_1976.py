@@ -1,7 +1,7 @@
 """The U.S. Standard Atmosphere 1976 above 86 km: each gas diffuses through the others.
 
 Written in the standard's own variables and integrated once into a dense table. All equation and table
-numbers are those of [USSA1976].
+numbers are those of [StandardAtmosphere1976].
 """
 
 from __future__ import annotations

@@ -6,7 +6,7 @@ import numpy as np
 
 from aero.arrays import Floats
 
-# Constants of the standard [USSA1976], not the present ones: the printed table follows from these.
+# Constants of the standard [StandardAtmosphere1976], not the present ones: the printed table follows from these.
 GAS_CONSTANT = 8314.32  # J/(kmol K), table 2
 AVOGADRO = 6.022169e26  # 1/kmol, table 2
 BOLTZMANN = 1.380622e-23  # J/K, table 2
@@ -95,7 +95,7 @@ def layers(altitude: Floats) -> tuple[Floats, Floats, Floats, Floats]:
 
     References
     ----------
-    [USSA1976], eqs. 18, 23, 33a, 33b, 42 and table 8.
+    [StandardAtmosphere1976], eqs. 18, 23, 33a, 33b, 42 and table 8.
 
     Examples
     --------

@@ -41,13 +41,13 @@ ATMOSPHERES: dict[str, Model] = {
         StandardAtmosphere1976.altitude_range,
     ),
     "nrlmsise-00": Model(
-        "NRLMSISE-00, 0 to 1000 km: place, date and solar activity",
+        "NRLMSISE-00, -0.5 to 1000 km: place, date and solar activity",
         partial(Msis, "nrlmsise-00"),
         Msis.needs_place,
         Msis.altitude_range,
     ),
     "msis-2.1": Model(
-        "NRLMSIS 2.1, 0 to 1000 km: place, date and solar activity; 11-14 % thinner at 80-90 and 120-200 km",
+        "NRLMSIS 2.1, -0.5 to 1000 km: place, date and solar activity; 11-14 % thinner at 80-90 and 120-200 km",
         partial(Msis, "msis-2.1"),
         Msis.needs_place,
         Msis.altitude_range,

@@ -35,7 +35,7 @@ class StandardAtmosphere1976:
 
     References
     ----------
-    [USSA1976].
+    [StandardAtmosphere1976].
 
     Examples
     --------

@@ -62,7 +62,7 @@ class TableAtmosphere:
 
     References
     ----------
-    [FritschButland1984] for the monotone cubic; [USSA1976] for the composition.
+    [FritschButland1984] for the monotone cubic; [StandardAtmosphere1976] for the composition.
     """
 
     path: str | Path

@@ -11,6 +11,7 @@ import numpy as np
 from aero.arrays import ArrayLike, Floats, floats
 from aero.bridge.functions import BRIDGES, Fraction
 from aero.errors import InputError, choose, nearest
+from aero.force.newtonian import above_newtonian
 
 if TYPE_CHECKING:
     from aero.body import Vehicle
@@ -183,13 +184,16 @@ def bridge_for(vehicle: Vehicle, coefficient: str) -> Bridge | HeatBridge:
     Notes
     -----
     A function named without centre and width brings the ones it was published with. Another similarity number
-    needs its own centre, for a centre belongs to its number.
+    needs its own centre, for a centre belongs to its number. How far a cone may lie above its Newtonian value
+    goes by its half angle (`aero.force.above_newtonian`); the table's row holds the largest.
     """
     body = vehicle.body_class or NO_SHAPE
     row = DEFAULTS.get((body, coefficient))
     if row is None:
         known = ", ".join(sorted({body for body, _ in DEFAULTS}))
         raise ValueError(f"no bridge for '{coefficient}' of '{body}'; body classes: {known}")
+    if isinstance(row, Bridge) and row.continuum_above and vehicle.shape is not None:
+        row = replace(row, continuum_above=above_newtonian(vehicle.shape))
     given = vehicle.bridging.get(coefficient)
     if not given:
         return row

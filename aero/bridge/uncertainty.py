@@ -15,6 +15,7 @@ import numpy as np
 from aero.arrays import ArrayLike, Floats, floats
 from aero.bridge.defaults import Bridge, HeatBridge
 from aero.bridge.functions import Fraction
+from aero.force.newtonian import BASE_SIGMA
 from aero.heat.convective import CONVECTIVE, convective_sigma
 from aero.heat.radiative import radiative_sigma
 
@@ -65,6 +66,7 @@ def drag_band(
     accommodation: ArrayLike,
     wall_temperature: ArrayLike,
     energy_accommodation: ArrayLike | None = None,
+    base: ArrayLike | None = None,
     fraction: Fraction | None = None,
 ) -> Band:
     """Return the 95 % band of a bridged drag coefficient.
@@ -87,6 +89,8 @@ def drag_band(
     energy_accommodation : (...,) array_like, optional
         The accommodation itself. With it, its doubt counts along the chord over 95 % and not along the
         tangent, which near 1 with a cold wall is twice as steep; without it the band is too wide.
+    base : (...,) array_like, optional
+        The base pressure's part of the continuum coefficient.
     fraction : Fraction, optional
         What `bridge(number)` gave, to save doing it again.
 
@@ -135,6 +139,7 @@ def drag_band(
         "bridge centre": tilt * share.by_centre * bridge.centre_sigma,
         "bridge width": tilt * share.by_width * bridge.width_sigma,
         "continuum level": level * bridge.continuum_sigma,
+        "base pressure": (1.0 - share.value) * inverse * BASE_SIGMA * (0.0 if base is None else floats(base)),
         "wall": thin * by_wall * (WALL_SIGMA * wall),
     }
     behind = APPROACH * share.value / np.sqrt(1.0 + 0.1 * bridge.over_centre(number))

@@ -96,6 +96,7 @@ def command(**options: Any) -> None:
     if out is not None:
         from aero.trajectory import write_trajectory
 
+        Path(out).absolute().parent.mkdir(parents=True, exist_ok=True)
         comments = [_recipe(options, air_model.description), *notes]
         write_trajectory(
             flight.trajectory(Path(out).stem), out, replace=options["replace"], comments=comments

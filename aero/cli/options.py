@@ -84,7 +84,11 @@ class Bounds(click.ParamType[tuple[float, float, float]]):
 class Wall(click.ParamType[float | str]):
     """A wall temperature or the word radiative."""
 
-    name = "300K|radiative"
+    name = "wall"
+
+    def get_metavar(self, param: click.Parameter, ctx: click.Context) -> str:  # noqa: ARG002 - click's signature
+        """Show what may be written in the help."""
+        return "300K|radiative"
 
     def convert(self, value: object, param: click.Parameter | None, ctx: click.Context | None) -> float | str:
         """Return a temperature in kelvin or "radiative"."""

@@ -158,5 +158,6 @@ def report(result: Any, files: list[str], why: str, options: dict[str, Any]) -> 
     for note in result.notes:
         say(f"note: {note}", style=style)
     say(CAUTION, style=style)
-    first = f"{out}/report.html" if "report.html" in files else f"{out}/segments.csv"
+    table = "segments.csv" if len(result.segments) else next(f for f in files if f.startswith("points."))
+    first = f"{out}/{'report.html' if 'report.html' in files else table}"
     say(f"Wrote {len(files)} files to {out}/; open {first} first.", style=style)

@@ -61,7 +61,7 @@ def continuum(
 
     References
     ----------
-    [Lees1955], [Ames1953], [Eckert1955], [Fleeman2001]
+    [Lees1955], [NACA1135], [Eckert1955], [Fleeman2001]
 
     Examples
     --------

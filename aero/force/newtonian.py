@@ -56,7 +56,7 @@ def stagnation_pressure_coefficient(mach: ArrayLike, heat_capacity_ratio: ArrayL
 
     References
     ----------
-    [Ames1953]
+    [NACA1135]
 
     Examples
     --------

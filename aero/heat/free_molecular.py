@@ -109,7 +109,7 @@ def free_molecular_flux(
 
     References
     ----------
-    [Bird1994], [SchaafChambre1958]
+    [Bird1994], [Schaaf1958]
     """
     incident, emitted = energy_fluxes(air, flow)
     net = incident - emitted * floats(wall_temperature)

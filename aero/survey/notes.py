@@ -15,6 +15,7 @@ if TYPE_CHECKING:
     from aero.trajectory import Trajectory
 
 FAST = 9e3  # m/s, where shock-layer radiation begins to matter
+FASTEST = 16e3  # m/s, end of the radiative correlation
 SLOW_MACH = 2.0  # below it the Newtonian limit is an extrapolation
 ACTIVE_FROM = 120e3  # m, winds and activity matter above it
 BLUNT = np.radians(45.0)
@@ -36,14 +37,11 @@ def survey_notes(
     columns : mapping of name to (n,) array
         The computed columns of the points table.
     """
+    from aero.trajectory.trajectory import NO_TIME
+
     notes = list(trajectory.notes)
-    if trajectory.skipped:
-        count = len(trajectory.skipped)
-        notes.append(
-            f"{count} bad row{'s were' if count > 1 else ' was'} skipped; skipped.csv lists each with its reason."
-        )
-    if trajectory.time is None:
-        notes.append("No time column: points were surveyed one by one, without crossings, segments or loads.")
+    if trajectory.time is None and NO_TIME not in notes:
+        notes.append(NO_TIME)
     notes += _common(
         vehicle, atmosphere, settings, trajectory.altitude, trajectory.speed, columns, trajectory.utc
     )
@@ -118,6 +116,11 @@ def _vehicle(vehicle: Vehicle, speed: np.ndarray, columns: Mapping[str, np.ndarr
         notes.append(
             "On a blunt capsule the sonic line may sit at the shoulder; its stagnation heating then follows an "
             "effective radius larger than the nose's (Zoby & Sullivan 1966). Give it as [heating] nose_radius."
+        )
+    if np.any(speed > FASTEST):
+        notes.append(
+            f"Above {FASTEST / 1e3:g} km/s the radiative correlation has no answer; heat flux is empty there, and so "
+            "is the heat load from there on."
         )
     if np.any(speed >= FAST):
         notes.append(

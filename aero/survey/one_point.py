@@ -13,7 +13,7 @@ from aero.regime import REGIMES
 from aero.survey.chain import conditions
 from aero.survey.inputs import Inputs
 from aero.survey.notes import point_notes
-from aero.survey.place import check_angle
+from aero.survey.place import check_altitudes, check_angle
 from aero.survey.settings import Settings
 
 if TYPE_CHECKING:
@@ -79,6 +79,7 @@ def point(
     from aero.air import StandardAtmosphere1976
 
     air_model: Atmosphere = atmosphere or StandardAtmosphere1976()
+    check_altitudes(air_model, np.array([altitude]), source="--altitude")
     chosen = settings or Settings()
     named = dict(lengths or {})
     if vehicle is not None:

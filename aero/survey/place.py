@@ -7,12 +7,27 @@ from typing import TYPE_CHECKING
 
 import numpy as np
 
+from aero.air.state import Atmosphere
+from aero.arrays import Floats
 from aero.errors import InputError
 
 if TYPE_CHECKING:
     from aero.trajectory import Trajectory
 
 LIMITS = {"latitude": 90.0, "longitude": 360.0}  # deg
+
+
+def check_altitudes(atmosphere: Atmosphere, altitude: Floats, *, source: str) -> None:
+    """Raise an InputError where an altitude [m] lies outside what an atmosphere answers for."""
+    low, high = atmosphere.altitude_range
+    outside = altitude[(altitude < low) | (altitude > high)]
+    if outside.size:
+        raise InputError(
+            f"altitude {outside[0] / 1e3:g} km lies outside the {low / 1e3:g} to {high / 1e3:g} km of "
+            f"{atmosphere.name}",
+            source=source,
+            remedy="choose another altitude or another --atmosphere",
+        )
 
 
 def check_angle(name: str, value: float | None) -> None:

@@ -8,6 +8,7 @@ from aero.air.state import SPECIES, Atmosphere
 from aero.arrays import Floats
 from aero.gas import flow, mean_free_path
 from aero.survey.inputs import Inputs, air_at
+from aero.survey.place import check_altitudes, check_angle
 
 
 def profile(
@@ -30,7 +31,15 @@ def profile(
     latitude, longitude : float, optional [rad]
     date : datetime64, optional
         UTC.
+
+    Raises
+    ------
+    InputError
+        If an altitude lies outside the atmosphere, or the place cannot be.
     """
+    check_altitudes(atmosphere, altitude, source="--from, --to")
+    check_angle("latitude", latitude)
+    check_angle("longitude", longitude)
     count = altitude.size
 
     def same(value: float | None) -> Floats | None:

@@ -103,6 +103,7 @@ def vehicle_columns(
         accommodation=spread,
         wall_temperature=wall,
         energy_accommodation=accommodated,
+        base=dense.drag_base,
         fraction=fraction,
     )
     moves = moving.speed > 0.0

@@ -13,7 +13,7 @@ from aero.trajectory.frames import ALTITUDE_KINDS, air_relative
 from aero.trajectory.meanings import IMPLIED, MEANINGS
 from aero.trajectory.metadata import CHOICES
 from aero.trajectory.table import Table
-from aero.trajectory.trajectory import Trajectory
+from aero.trajectory.trajectory import NO_TIME, Trajectory
 from aero.units import utc
 
 GAP = 10.0  # a step this many times the median step is noted; the factor is a judgement
@@ -243,7 +243,7 @@ def _turned(si: dict[str, Floats]) -> str:
 def _time_notes(time: Floats | None, after: Trajectory | None, notes: list[str]) -> None:
     if time is None:
         if after is None:
-            notes.append("no time column: points are taken one by one, without segments or loads")
+            notes.append(NO_TIME)
         return
     if after is not None and after.time is not None:
         time = np.concatenate([after.time[-1:], time])

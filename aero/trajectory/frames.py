@@ -143,7 +143,7 @@ def from_geopotential(altitude: ArrayLike, latitude: ArrayLike) -> Floats:
 
     Notes
     -----
-    z = r0 H / (r0 - H), r0 = 6356.766 km [USSA1976]; equation from memory.
+    z = r0 H / (r0 - H), r0 = 6356.766 km [StandardAtmosphere1976]; equation from memory.
 
     Examples
     --------

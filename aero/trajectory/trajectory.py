@@ -14,6 +14,8 @@ from numpy.typing import NDArray
 from aero.arrays import Floats, Times, readonly
 from aero.trajectory.meanings import MEANINGS, REQUIRED
 
+NO_TIME = "no time column: points are taken one by one, without segments or loads"
+
 
 @dataclass(frozen=True)
 class Skipped:

@@ -139,6 +139,10 @@ POINTS: dict[str, tuple[list[str], list[str]]] = {
         ["speed", "m/s"],
     ),
     "above the air": (["--altitude", "1200km", "--speed", "7km/s", "--length", "1m"], ["1200 km", "1000 km"]),
+    "under the empirical air": (
+        ["--altitude=-2km", "--speed", "0km/s", "--length", "1m", *PLACE],
+        ["-2 km", "-0.5 to 1000 km", "nrlmsise-00"],
+    ),
     "no length": (["--altitude", "100km", "--speed", "7km/s"], ["--length"]),
     "length of nothing": (["--altitude", "100km", "--speed", "7km/s", "--length", "0m"], ["positive"]),
     "twice the same length": (
@@ -183,6 +187,10 @@ def test_bad_point(name: str, run) -> None:  # type: ignore[no-untyped-def]
 OTHERS: dict[str, tuple[list[str], list[str]]] = {
     "unknown command": (["survay"], ["survay", "survey"]),
     "air upside down": (["air", "--from", "200km", "--to", "100km", "--step", "1km"], ["--to", "below"]),
+    "air beyond an own table": (
+        ["air", "--from", "0km", "--to", "50km", "--step", "10km", "--atmosphere", "missing.csv"],
+        ["missing.csv"],
+    ),
     "air without step": (["air", "--from", "0km", "--to", "100km", "--step", "0m"], ["--step"]),
     "too many rows": (["air", "--from", "0km", "--to", "1000km", "--step", "1um"], ["--step", "rows"]),
     "figure of unknown kind": (

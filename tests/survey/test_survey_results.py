@@ -130,7 +130,7 @@ def test_without_times_points_are_surveyed_one_by_one(body: Vehicle) -> None:
     assert result.segments.empty
     assert result.crossings.empty
     assert result.points["heat_load_J_m2"].isna().all()
-    assert any("No time column" in note for note in result.notes)
+    assert any("no time column" in note for note in result.notes)
     assert "of 3 conditions" in result.summary
 
 
