@@ -102,7 +102,7 @@ def missing_of(options: dict[str, Any]) -> str | None:
     if place and options["date"] is not None:
         return None
     if not place and options["date"] is None:
-        return "no date and place"
+        return "neither date nor place"
     return "no date" if place else "no place"
 
 

@@ -92,7 +92,7 @@ def trajectory_missing(trajectory: Any) -> str | None:
     if place and date:
         return None
     if not place and not date:
-        return "no date and place"
+        return "neither date nor place"
     return "no date" if place else "no place"
 
 

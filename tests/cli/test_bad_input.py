@@ -75,7 +75,7 @@ SURVEYS: dict[str, tuple[str | None, str | None, list[str], list[str]]] = {
         FLIGHT,
         VEHICLE,
         ["--atmosphere", "nrlmsise-00"],
-        ["no date and place", "--latitude"],
+        ["neither date nor place", "--latitude"],
     ),
     "activity for the standard": (
         FLIGHT,
