@@ -60,20 +60,28 @@ def conditions(
     shown = path if settings.free_path == "hard-sphere" else mean_free_path(air, settings.free_path)
     columns["mean_free_path_m"] = shown
     _flow_columns(columns, moving)
-    density_uncertainty = atmosphere.uncertainty(air.altitude, utc=inputs.utc)
     if vehicle is None:
         wall = np.full_like(air.altitude, settings.wall if isinstance(settings.wall, float) else BARE_WALL)
-        accommodated: Floats | float = BARE_ACCOMMODATION
+        accommodated = np.full_like(wall, BARE_ACCOMMODATION)
         nose = None
     else:
         # imported here: a condition without a vehicle needs none of it and starts faster
         from aero.body.surface import accommodation
-        from aero.survey.vehicle_columns import vehicle_columns
+        from aero.survey.vehicle_columns import Passing, vehicle_columns, wall_choice
 
         accommodated = accommodation(vehicle.surface, air)
-        columns |= vehicle_columns(
-            inputs, air, moving, path, accommodated, vehicle, settings, density_uncertainty
+        passing = Passing(
+            vehicle,
+            settings,
+            air,
+            moving,
+            path,
+            accommodated,
+            wall_choice(inputs, vehicle, settings),
+            vehicle.angle_of_attack if inputs.angle_of_attack is None else inputs.angle_of_attack,
+            atmosphere.uncertainty(air.altitude, utc=inputs.utc),
         )
+        columns |= vehicle_columns(passing)
         wall = columns["wall_temperature_K"]
         nose = vehicle.nose_radius
         _similarity_columns(columns, moving, vehicle.reference_length)
@@ -118,7 +126,7 @@ def _length_columns(
     moving: Flow,
     shown: Floats,
     wall: Floats,
-    accommodated: Floats | float,
+    accommodated: Floats,
     nose: float | None,
     lengths: Mapping[str, float],
     settings: Settings,

@@ -116,6 +116,22 @@ def report_page(survey: Survey, record: Mapping[str, Any], drawn: Mapping[str, s
         As from `survey_record`.
     drawn : mapping of figure name to SVG
     """
+    return Page(
+        title=f"{survey.vehicle.name} on {survey.trajectory.name}",
+        sentence=survey.summary,
+        sections=report_sections(survey, record, drawn),
+        models=models_used(survey),
+        notes=survey.notes,
+        cautions=CAUTIONS,
+        provenance={
+            k: record[k] for k in ("inputs", "atmosphere", "options", "versions", "vehicle", "digest")
+        },
+        facts=facts(survey, record),
+    )
+
+
+def report_sections(survey: Survey, record: Mapping[str, Any], drawn: Mapping[str, str]) -> list[Section]:
+    """Return the sections of the page in reading order."""
 
     def pictures(name: str, caption: str) -> list[Picture]:
         return [Picture(drawn[name], caption)] if name in drawn else []
@@ -133,7 +149,7 @@ def report_page(survey: Survey, record: Mapping[str, Any], drawn: Mapping[str, s
         file="segments.csv",
     )
     timed = bool(len(survey.segments))
-    sections = [
+    return [
         Section(
             "Regimes along the flight",
             pictures=pictures(
@@ -167,18 +183,6 @@ def report_page(survey: Survey, record: Mapping[str, Any], drawn: Mapping[str, s
             pictures=pictures("air", "The air the flight met."),
         ),
     ]
-    return Page(
-        title=f"{survey.vehicle.name} on {survey.trajectory.name}",
-        sentence=survey.summary,
-        sections=sections,
-        models=models_used(survey),
-        notes=survey.notes,
-        cautions=CAUTIONS,
-        provenance={
-            k: record[k] for k in ("inputs", "atmosphere", "options", "versions", "vehicle", "digest")
-        },
-        facts=facts(survey, record),
-    )
 
 
 def facts(survey: Survey, record: Mapping[str, Any]) -> dict[str, str]:

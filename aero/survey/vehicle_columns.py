@@ -2,19 +2,19 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from dataclasses import dataclass
 
 import numpy as np
 
 from aero.air.state import Air
-from aero.arrays import Floats
+from aero.arrays import Floats, floats
 from aero.body import Vehicle
 from aero.body.surface import accommodation_uncertainty
 from aero.bridge import Bridge, blend, bridge_for, similarity_number
 from aero.bridge.functions import Fraction
 from aero.bridge.uncertainty import drag_band, heat_band
 from aero.errors import InputError
-from aero.force import continuum, free_molecular
+from aero.force import Coefficients, continuum, free_molecular
 from aero.gas import Flow, emitted_free_path, free_path_uncertainty
 from aero.heat import stagnation
 from aero.survey.inputs import Inputs
@@ -39,126 +39,62 @@ def wall_choice(inputs: Inputs, vehicle: Vehicle, settings: Settings) -> Floats 
     return "radiative" if vehicle.surface.temperature is None else vehicle.surface.temperature
 
 
-def vehicle_columns(
-    inputs: Inputs,
-    air: Air,
-    moving: Flow,
-    path: Floats,
-    accommodated: Floats | float,
-    vehicle: Vehicle,
-    settings: Settings,
-    density_uncertainty: tuple[Floats, Floats],
-) -> dict[str, np.ndarray]:
+@dataclass(frozen=True, eq=False)
+class Passing:
+    """A vehicle in the stream at n points: what heating and drag are computed from.
+
+    Attributes
+    ----------
+    vehicle : Vehicle
+    settings : Settings
+    air, moving : Air, Flow
+    path : (n,) array [m]
+        Hard-sphere mean free path, the definition that bridges are fitted in.
+    accommodated : (n,) array
+        Energy accommodation.
+    wall : (n,) array or float [K], or "radiative"
+        Wall temperature as chosen.
+    angle : (n,) array or float [rad]
+        Angle of attack.
+    density_uncertainty : (bias, scatter)
+        Relative 1-sigma of the density.
+    """
+
+    vehicle: Vehicle
+    settings: Settings
+    air: Air
+    moving: Flow
+    path: Floats
+    accommodated: Floats
+    wall: Floats | float | str
+    angle: Floats | float
+    density_uncertainty: tuple[Floats, Floats]
+
+    @property
+    def accommodation_spread(self) -> Floats:
+        """1-sigma of the energy accommodation."""
+        return accommodation_uncertainty(self.air.altitude)
+
+
+def vehicle_columns(passing: Passing) -> dict[str, np.ndarray]:
     """Return the columns of heating, then of drag, which needs the wall temperature that heating leaves."""
-    spread = accommodation_uncertainty(air.altitude)
-    wall, columns = _heat_columns(
-        air,
-        moving,
-        accommodated,
-        wall_choice(inputs, vehicle, settings),
-        vehicle,
-        settings,
-        density_uncertainty,
-        spread,
-    )
+    wall, columns = _heat_columns(passing)
     columns["wall_temperature_K"] = wall
-    angle = vehicle.angle_of_attack if inputs.angle_of_attack is None else inputs.angle_of_attack
-    across = vehicle.length_across
-    knudsen = path / across
-    free = free_molecular(vehicle, air, moving, wall, accommodated, angle)
-    dense = continuum(
-        vehicle,
-        air,
-        moving,
-        path / vehicle.reference_length,
-        angle,
-        real_gas=settings.real_gas,
-        wall_temperature=wall,
-    )
-    bridge = bridge_for(vehicle, "drag")
-    emitted = None
-    if "knudsen_emitted" in (bridge.similarity, bridge_for(vehicle, "lift").similarity):
-        emitted = emitted_free_path(air, moving, wall, accommodated) / across
-
-    def number(similarity: str) -> Floats:
-        return similarity_number(
-            similarity,
-            knudsen=knudsen,
-            knudsen_emitted=emitted,
-            cheng=moving.cheng_per_m / across,
-            reynolds_stagnation=moving.reynolds_stagnation_per_m * across,
-        )
-
-    similar = number(bridge.similarity)
-    fraction = bridge(similar)
-    drag = blend(dense.drag, free.drag, fraction.value)
-    band = drag_band(
-        drag,
-        dense.drag,
-        free,
-        bridge,
-        similar,
-        density_sigma=density_uncertainty,
-        cross_section=free_path_uncertainty(air),
-        accommodation=spread,
-        wall_temperature=wall,
-        energy_accommodation=accommodated,
-        base=dense.drag_base,
-        fraction=fraction,
-    )
-    moves = moving.speed > 0.0
-    loading = vehicle.mass / vehicle.reference_area
-    columns["drag_coefficient"] = drag
-    columns["drag_coefficient_free_molecular"] = free.drag
-    columns["drag_coefficient_continuum"] = dense.drag
-    columns["drag_bridge"] = np.where(moves, fraction.value, np.nan)
-    columns["drag_coefficient_low"] = band.low
-    columns["drag_coefficient_high"] = band.high
-    columns["lift_coefficient"] = _lift(vehicle, free.lift, dense.lift, bridge, fraction, number)
-    columns["ballistic_coefficient_kg_m2"] = loading / drag
-    columns["drag_deceleration_m_s2"] = np.where(moves, moving.dynamic_pressure * drag / loading, 0.0)
-    return columns
+    return columns | _drag_columns(passing, wall)
 
 
-def _lift(
-    vehicle: Vehicle,
-    free: Floats,
-    dense: Floats,
-    drag_bridge: Bridge,
-    drag_fraction: Fraction,
-    number: Callable[[str], Floats],
-) -> Floats:
-    bridge = bridge_for(vehicle, "lift")
-    same = (bridge.function, bridge.similarity, bridge.centre, bridge.width) == (
-        drag_bridge.function,
-        drag_bridge.similarity,
-        drag_bridge.centre,
-        drag_bridge.width,
-    )
-    fraction = drag_fraction if same else bridge(number(bridge.similarity))
-    return blend(dense, free, fraction.value)
-
-
-def _heat_columns(
-    air: Air,
-    moving: Flow,
-    accommodated: Floats | float,
-    wall: Floats | float | str,
-    vehicle: Vehicle,
-    settings: Settings,
-    density_uncertainty: tuple[Floats, Floats],
-    spread: Floats,
-) -> tuple[Floats, dict[str, np.ndarray]]:
+def _heat_columns(passing: Passing) -> tuple[Floats, dict[str, np.ndarray]]:
     """Return the wall temperature and the columns of heating, NaN where the vehicle has no nose radius."""
-    heat_bridge = bridge_for(vehicle, "heating")
+    vehicle, wall = passing.vehicle, passing.wall
+    bridge = bridge_for(vehicle, "heating")
     heat = stagnation(
         vehicle,
-        air,
-        moving,
-        accommodated,
+        passing.air,
+        passing.moving,
+        passing.accommodated,
         wall,
-        correlation=settings.convective,
-        exponent=heat_bridge.exponent,
+        correlation=passing.settings.convective,
+        exponent=bridge.exponent,
     )
     if heat is None:
         if isinstance(wall, str):
@@ -167,17 +103,101 @@ def _heat_columns(
                 source=vehicle.source or "vehicle",
                 remedy="give [heating] nose_radius or a wall temperature",
             )
-        nothing = np.full_like(air.altitude, np.nan)
-        return np.broadcast_to(np.asarray(wall, dtype=np.float64), air.altitude.shape), dict.fromkeys(
-            HEAT, nothing
-        )
+        nothing = np.full_like(passing.path, np.nan)
+        return np.broadcast_to(floats(wall), nothing.shape), dict.fromkeys(HEAT, nothing)
     band = heat_band(
         heat,
-        heat_bridge,
-        moving.speed,
-        density_sigma=density_uncertainty,
-        accommodation=accommodated,
-        accommodation_sigma=spread,
+        bridge,
+        passing.moving.speed,
+        density_sigma=passing.density_uncertainty,
+        accommodation=passing.accommodated,
+        accommodation_sigma=passing.accommodation_spread,
     )
     values = (heat.total, heat.free_molecular, heat.continuum, heat.radiative, band.low, band.high)
     return heat.wall_temperature, dict(zip(HEAT, values, strict=True))
+
+
+def _drag_columns(passing: Passing, wall: Floats) -> dict[str, np.ndarray]:
+    vehicle, moving = passing.vehicle, passing.moving
+    free, dense = limits(passing, wall)
+    bridge = bridge_for(vehicle, "drag")
+    number = similarity(passing, wall, bridge)
+    fraction = bridge(number)
+    drag = blend(dense.drag, free.drag, fraction.value)
+    band = drag_band(
+        drag,
+        dense.drag,
+        free,
+        bridge,
+        number,
+        density_sigma=passing.density_uncertainty,
+        cross_section=free_path_uncertainty(passing.air),
+        accommodation=passing.accommodation_spread,
+        wall_temperature=wall,
+        energy_accommodation=passing.accommodated,
+        base=dense.drag_base,
+        fraction=fraction,
+    )
+    moves = moving.speed > 0.0
+    loading = vehicle.mass / vehicle.reference_area
+    return {
+        "drag_coefficient": drag,
+        "drag_coefficient_free_molecular": free.drag,
+        "drag_coefficient_continuum": dense.drag,
+        "drag_bridge": np.where(moves, fraction.value, np.nan),
+        "drag_coefficient_low": band.low,
+        "drag_coefficient_high": band.high,
+        "lift_coefficient": _lift(passing, wall, free, dense, bridge, fraction),
+        "ballistic_coefficient_kg_m2": loading / drag,
+        "drag_deceleration_m_s2": np.where(moves, moving.dynamic_pressure * drag / loading, 0.0),
+    }
+
+
+def limits(passing: Passing, wall: Floats) -> tuple[Coefficients, Coefficients]:
+    """Return the free-molecular and the continuum coefficients."""
+    vehicle, air, moving = passing.vehicle, passing.air, passing.moving
+    free = free_molecular(vehicle, air, moving, wall, passing.accommodated, passing.angle)
+    dense = continuum(
+        vehicle,
+        air,
+        moving,
+        passing.path / vehicle.reference_length,
+        passing.angle,
+        real_gas=passing.settings.real_gas,
+        wall_temperature=wall,
+    )
+    return free, dense
+
+
+def similarity(passing: Passing, wall: Floats, bridge: Bridge) -> Floats:
+    """Return the number a bridge is a function of, on the length across the flow."""
+    across, moving = passing.vehicle.length_across, passing.moving
+    emitted = None
+    if bridge.similarity == "knudsen_emitted":
+        emitted = emitted_free_path(passing.air, moving, wall, passing.accommodated) / across
+    return similarity_number(
+        bridge.similarity,
+        knudsen=passing.path / across,
+        knudsen_emitted=emitted,
+        cheng=moving.cheng_per_m / across,
+        reynolds_stagnation=moving.reynolds_stagnation_per_m * across,
+    )
+
+
+def _lift(
+    passing: Passing,
+    wall: Floats,
+    free: Coefficients,
+    dense: Coefficients,
+    drag_bridge: Bridge,
+    drag_fraction: Fraction,
+) -> Floats:
+    bridge = bridge_for(passing.vehicle, "lift")
+    same = (bridge.function, bridge.similarity, bridge.centre, bridge.width) == (
+        drag_bridge.function,
+        drag_bridge.similarity,
+        drag_bridge.centre,
+        drag_bridge.width,
+    )
+    fraction = drag_fraction if same else bridge(similarity(passing, wall, bridge))
+    return blend(dense.lift, free.lift, fraction.value)
