@@ -11,7 +11,7 @@ import numpy as np
 from aero.air import activity as _activity
 from aero.air.activity import ACTIVITIES, LEVELS, OBSERVED, Indices
 from aero.air.checks import altitudes, place_and_date
-from aero.air.msis_run import run, to_air
+from aero.air.msis_run import Question, run, to_air
 from aero.air.space_weather import History, read_space_weather, shipped
 from aero.air.state import Air
 from aero.air.uncertainty import msis as _uncertainty
@@ -179,13 +179,23 @@ class Msis:
         InputError
             If the indices of a date are not known.
         """
+        question = self.question(altitude_m, latitude_deg=latitude_deg, longitude_deg=longitude_deg, utc=utc)
+        return to_air(self.name, question.altitude, run(VERSIONS[self.version].number, question))
+
+    def question(
+        self,
+        altitude_m: ArrayLike,
+        *,
+        latitude_deg: ArrayLike | None = None,
+        longitude_deg: ArrayLike | None = None,
+        utc: Times | np.datetime64 | None = None,
+    ) -> Question:
+        """Return what `at` would ask the model, checked and with the indices of each date."""
         altitude = altitudes(altitude_m, self.altitude_range)
         latitude, longitude, dates = place_and_date(
             altitude.shape, latitude_deg, longitude_deg, utc, self.name
         )
-        indices = self.indices(dates)
-        out = run(VERSIONS[self.version].number, altitude.reshape(-1), latitude, longitude, dates, indices)
-        return to_air(self.name, altitude, out)
+        return Question(altitude, latitude, longitude, dates, self.indices(dates))
 
     def uncertainty(
         self, altitude_m: ArrayLike, *, utc: Times | np.datetime64 | None = None

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from dataclasses import dataclass
 from typing import Any
 
 import numpy as np
@@ -16,41 +17,50 @@ _MASS, _TEMPERATURE, _ANOMALOUS_O = 0, 10, 8
 _COLUMN = {"N2": 1, "O2": 2, "O": 3, "N": 7, "Ar": 6, "He": 4, "H": 5}
 
 
-def run(
-    number: float, altitude: Floats, latitude: Floats, longitude: Floats, dates: Times, indices: Indices
-) -> Floats:
+@dataclass(frozen=True, eq=False)
+class Question:
+    """What the model is asked: a track of points with their indices.
+
+    Attributes
+    ----------
+    altitude : (...,) array [m]
+    latitude, longitude : (n,) arrays [deg]
+    dates : (n,) array of UTC datetimes
+    indices : Indices
+    """
+
+    altitude: Floats
+    latitude: Floats
+    longitude: Floats
+    dates: Times
+    indices: Indices
+
+
+def run(number: float, question: Question) -> Floats:
     """Call pymsis once for each geomagnetic mode present; return its (n, 11) output in double precision."""
-    if altitude.size == 0:
+    count = question.altitude.size
+    if count == 0:
         return np.empty((0, 11))
-    storm = indices.storm
+    storm = question.indices.storm
     if storm.all() or not storm.any():
-        everything = slice(None)
-        return _call(number, altitude, latitude, longitude, dates, indices, everything, bool(storm[0]))
-    out = np.empty((altitude.size, 11))
+        return _call(number, question, slice(None), bool(storm[0]))
+    out = np.empty((count, 11))
     for mode in (False, True):
         part = np.flatnonzero(storm == mode)
-        out[part] = _call(number, altitude, latitude, longitude, dates, indices, part, mode)
+        out[part] = _call(number, question, part, mode)
     return out
 
 
-def _call(
-    number: float,
-    altitude: Floats,
-    latitude: Floats,
-    longitude: Floats,
-    dates: Times,
-    indices: Indices,
-    part: Any,
-    storm: bool,
-) -> Floats:
+def _call(number: float, question: Question, part: Any, storm: bool) -> Floats:
     import pymsis
 
-    height = altitude[part] * 1e-3
+    indices = question.indices
+    height = question.altitude.reshape(-1)[part] * 1e-3
     # Equal lengths of everything make a track; with all indices given nothing is looked up or fetched.
     out = pymsis.calculate(
-        dates[part],
-        longitude[part],
-        latitude[part],
+        question.dates[part],
+        question.longitude[part],
+        question.latitude[part],
         height,
         indices.f107[part],
         indices.f107a[part],

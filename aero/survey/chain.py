@@ -36,6 +36,8 @@ def conditions(
     vehicle: Vehicle | None,
     lengths: Mapping[str, float],
     settings: Settings,
+    *,
+    air: Air | None = None,
 ) -> dict[str, np.ndarray]:
     """Return every computed column of a block of points.
 
@@ -47,13 +49,15 @@ def conditions(
         Without one, the columns of drag and heating are left out.
     lengths : mapping of name to length [m]
     settings : Settings
+    air : Air, optional
+        The air at the points, where it is already known.
 
     Returns
     -------
     dict of (n,) arrays
         Keyed by column name; `regime.NAME` holds positions in `REGIMES`.
     """
-    air = air_at(inputs, atmosphere)
+    air = air_at(inputs, atmosphere) if air is None else air
     moving = flow(air, inputs.speed)
     columns = _air_columns(air)
     path = mean_free_path(air, "hard-sphere")

@@ -3,11 +3,16 @@
 from __future__ import annotations
 
 from dataclasses import dataclass
+from typing import TYPE_CHECKING
 
 import numpy as np
 
 from aero.air.state import Air, Atmosphere
 from aero.arrays import Floats, Times
+
+if TYPE_CHECKING:
+    from aero.air.msis import Msis
+    from aero.air.msis_run import Question
 
 
 @dataclass(frozen=True, eq=False)
@@ -36,5 +41,18 @@ def air_at(inputs: Inputs, atmosphere: Atmosphere) -> Air:
     """Return the air at the points."""
     if not atmosphere.needs_place:
         return atmosphere.at(inputs.altitude)
-    degrees = [None if a is None else np.degrees(a) for a in (inputs.latitude, inputs.longitude)]
-    return atmosphere.at(inputs.altitude, latitude_deg=degrees[0], longitude_deg=degrees[1], utc=inputs.utc)
+    latitude, longitude = _degrees(inputs)
+    return atmosphere.at(inputs.altitude, latitude_deg=latitude, longitude_deg=longitude, utc=inputs.utc)
+
+
+def msis_question(inputs: Inputs, atmosphere: Msis) -> Question:
+    """Return what `air_at` would ask MSIS."""
+    latitude, longitude = _degrees(inputs)
+    return atmosphere.question(
+        inputs.altitude, latitude_deg=latitude, longitude_deg=longitude, utc=inputs.utc
+    )
+
+
+def _degrees(inputs: Inputs) -> tuple[Floats | None, Floats | None]:
+    latitude, longitude = (None if a is None else np.degrees(a) for a in (inputs.latitude, inputs.longitude))
+    return latitude, longitude

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Sequence
+from collections.abc import Callable, Iterator, Sequence
 from dataclasses import dataclass, field
 from typing import TYPE_CHECKING
 
@@ -19,7 +19,7 @@ from aero.regime import REGIMES, Crossings, Cuts, Track, cut_segments, find_cros
 from aero.regime.track import Cubic, clock
 from aero.survey.chain import conditions
 from aero.survey.columns import CROSSING_COLUMNS, SEGMENT_COLUMNS, free_name, point_columns
-from aero.survey.inputs import Inputs
+from aero.survey.inputs import Inputs, air_at, msis_question
 from aero.survey.loads import Load, share
 from aero.survey.methods import segment_methods
 from aero.survey.notes import survey_notes
@@ -226,9 +226,11 @@ def _points(
     kept = {column.name for column in point_columns(list(lengths))}
     utc = trajectory.utc if atmosphere.needs_place else None
     columns: dict[str, np.ndarray] = {}
-    for start in range(0, count, BLOCK):
-        rows = slice(start, min(start + BLOCK, count))
-        part = conditions(block_inputs(trajectory, rows, utc), atmosphere, vehicle, lengths, settings)
+    blocks = [slice(start, min(start + BLOCK, count)) for start in range(0, count, BLOCK)]
+    inputs = [block_inputs(trajectory, rows, utc) for rows in blocks]
+    airs = block_airs(inputs, atmosphere, count)
+    for rows, given, air in zip(blocks, inputs, airs, strict=True):
+        part = conditions(given, atmosphere, vehicle, lengths, settings, air=air)
         if not columns:
             columns = _room(part, kept, count)
         for name, column in columns.items():
@@ -238,6 +240,20 @@ def _points(
     if trajectory.time is not None:
         columns["heat_load_J_m2"] = Load.of(trajectory.time, columns["heat_flux_W_m2"]).samples
     return columns
+
+
+def block_airs(inputs: Sequence[Inputs], atmosphere: Atmosphere, count: int) -> Iterator[Air]:
+    """Yield the air of each block; for MSIS and many points a second process works on every other block."""
+    if not isinstance(atmosphere, Msis):
+        yield from (air_at(given, atmosphere) for given in inputs)
+        return
+    from aero.air.ahead import ahead
+
+    with ahead(atmosphere, count) as source:
+        for k, given in enumerate(inputs):
+            if k % 2 == 0 and k + 1 < len(inputs):
+                source.ask(msis_question(inputs[k + 1], atmosphere))
+            yield source.air(msis_question(given, atmosphere), asked=k % 2 == 1)
 
 
 def _room(part: dict[str, np.ndarray], kept: set[str], count: int) -> dict[str, np.ndarray]:
