@@ -27,7 +27,10 @@ COVERAGE = 1.96  # standard deviations on either side of 95 % of a normal distri
 WALL_SIGMA = 0.10  # relative 1-sigma of a wall temperature, given or in balance (judgement)
 GAS_SURFACE_SIGMA = 0.02  # relative 1-sigma of free-molecular drag from the form of reflection: closed forms
 # with mean energy differ by 1.8-2.5 % from Cercignani-Lampis-Lord [Walker2014]
-APPROACH = 0.20  # how slowly drag nears its free-molecular limit, see `drag_band`
+APPROACH = (0.20, 0.10)  # how slowly drag nears its free-molecular limit, size and scale, see `drag_band`:
+# set on the sphere correlation of [Loth2021], Mach 4-10
+APPROACH_TUNNEL = (0.33, 0.03)  # the same up to Mach 10, set on the lower correlation of [Henderson1976]
+TUNNEL_MACH = (10.0, 20.0)  # the tunnels behind both reach Mach 10; above Mach 20 none speaks (judgement)
 NON_CATALYTIC = 0.5  # a wall that does not recombine atoms may see half the continuum heating (judgement)
 NO_FLUX = 1e-200  # W/m2; a flux whose inverse would overflow counts as none
 _RADIATIVE_DENSITY_EXPONENT = 1.22  # [TauberSutton1991]; that the radius's exponent knows density is left out
@@ -67,6 +70,7 @@ def drag_band(
     wall_temperature: ArrayLike,
     energy_accommodation: ArrayLike | None = None,
     base: ArrayLike | None = None,
+    mach: ArrayLike | None = None,
     fraction: Fraction | None = None,
 ) -> Band:
     """Return the 95 % band of a bridged drag coefficient.
@@ -91,6 +95,8 @@ def drag_band(
         tangent, which near 1 with a cold wall is twice as steep; without it the band is too wide.
     base : (...,) array_like, optional
         The base pressure's part of the continuum coefficient.
+    mach : (...,) array_like, optional
+        Mach number; without it the lower end is the wider one of slow flow.
     fraction : Fraction, optional
         What `bridge(number)` gave, to save doing it again.
 
@@ -109,9 +115,11 @@ def drag_band(
     ln C is taken as normal, which for a few percent is the same as C normal, keeps the bounds positive, and
     for a bridge far from its centre follows the exact shift more closely. Density and cross-sections enter
     through the similarity number only. One-sided below: the bridge nears F = 1 like exp(-log^2), whereas
-    first collisions act as a slow power of the Knudsen number; 0.2 F/sqrt(1 + 0.1 x/x_m) is how far the
-    sphere correlation of [Loth2021] stays behind. One-sided above: `Bridge.continuum_above`. One-sided parts
-    and the symmetric one add in quadrature on their side.
+    first collisions act as a slow power of the Knudsen number. a F/sqrt(1 + b x/x_m) is how far published
+    spheres stay behind: a, b = 0.2, 0.1 holds the correlation of [Loth2021], 0.33, 0.03 that of
+    [Henderson1976] too. Both rest on wind tunnels up to Mach 10, so that the wider pair goes over into the
+    narrower one, linearly, from Mach 10 to 20 (judgement). One-sided above: `Bridge.continuum_above`.
+    One-sided parts and the symmetric one add in quadrature on their side.
     """
     c, cc, cf = floats(drag), floats(continuum), free_molecular.drag
     by_accommodation, by_wall = free_molecular.drag_by_accommodation, free_molecular.drag_by_wall_temperature
@@ -142,9 +150,23 @@ def drag_band(
         "base pressure": (1.0 - share.value) * inverse * BASE_SIGMA * (0.0 if base is None else floats(base)),
         "wall": thin * by_wall * (WALL_SIGMA * wall),
     }
-    behind = APPROACH * share.value / np.sqrt(1.0 + 0.1 * bridge.over_centre(number))
+    behind = _approach(share, bridge.over_centre(number), mach)
     above = {"continuum above Newtonian": level * bridge.continuum_above} if bridge.continuum_above else {}
     return _band(c, contributions, {"approach to free-molecular": behind}, above)
+
+
+def _approach(share: Fraction, over_centre: Floats, mach: ArrayLike | None) -> Floats:
+    """Return how far, in ln C, drag may lie below for nearing its free-molecular limit slowly."""
+
+    def part(sizes: tuple[float, float]) -> Floats:
+        return floats(sizes[0] * share.value / np.sqrt(1.0 + sizes[1] * over_centre))
+
+    wide = part(APPROACH_TUNNEL)
+    if mach is None:
+        return wide
+    slow, fast = TUNNEL_MACH
+    beyond = np.clip((floats(mach) - slow) * (1.0 / (fast - slow)), 0.0, 1.0)
+    return floats(wide + beyond * (part(APPROACH) - wide))
 
 
 def _chord(by_accommodation: Floats, by_wall: Floats, wall: Floats, alpha: Floats, spread: Floats) -> Floats:

@@ -136,6 +136,7 @@ def _drag_columns(passing: Passing, wall: Floats) -> dict[str, np.ndarray]:
         wall_temperature=wall,
         energy_accommodation=passing.accommodated,
         base=dense.drag_base,
+        mach=moving.mach,
         fraction=fraction,
     )
     moves = moving.speed > 0.0

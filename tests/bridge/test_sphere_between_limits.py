@@ -97,18 +97,19 @@ def test_band_holds_the_wind_tunnel(row):
     assert low <= float(row["drag_coefficient"]) <= high
 
 
-@pytest.mark.parametrize("mach", [4.0, 6.0])
-def test_henderson_agrees_near_the_continuum_and_lies_under_us_beyond(mach):
-    """Henderson 1976, stated to Mach 6: falls under the exact free-molecular value and nears it slowly.
+@pytest.mark.parametrize("mach", MACHS)
+@pytest.mark.parametrize("wall", ["cold", "adiabatic"])
+@pytest.mark.parametrize("knudsen", [float(k) for k in np.logspace(-3, 2, 21)])
+def test_band_holds_the_correlation_of_henderson(mach, wall, knudsen):
+    """Henderson 1976, stated to Mach 6, the lowest of the published spheres between the limits.
 
-    Its deviation is recorded in docs/validation.md and is not a target.
+    The lower end of the band was set on it, so this holds that it stays so and confirms nothing.
     """
-    for knudsen in (1e-3, 3e-3, 1e-2):
-        _, low, high, *_, reynolds, _ = sphere(mach, "cold", knudsen=knudsen)
-        assert low <= REFERENCE.henderson(mach, reynolds, 1.0) <= high
-    for knudsen in (0.1, 1.0, 10.0):
-        drag, *_, reynolds, _ = sphere(mach, "cold", knudsen=knudsen)
-        assert REFERENCE.henderson(mach, reynolds, 1.0) < drag
+    drag, low, high, *_, reynolds, _ = sphere(mach, wall, knudsen=knudsen)
+    published = REFERENCE.henderson(mach, reynolds, 1.0 if wall == "cold" else 1 + 0.2 * mach**2)
+    assert low <= published <= high
+    if knudsen > 0.02:  # beyond the near-continuum it lies under us, as docs/validation.md says
+        assert published < drag
 
 
 def test_reference_correlation_reaches_free_molecular_flow():

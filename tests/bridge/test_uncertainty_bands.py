@@ -118,6 +118,26 @@ def test_band_is_the_root_sum_of_squares_with_one_sided_parts_on_their_side():
     assert set(band.above) == {"continuum above Newtonian"}
 
 
+def test_lower_end_goes_from_the_tunnels_width_to_the_narrower_one_over_mach_10_to_20():
+    """In between linearly; without a Mach number it is the wide one; the value itself does not move."""
+    bridge = DEFAULTS["sphere", "drag"]
+    number = np.logspace(-3, 3, 7)
+    c = blend(0.95, 2.2, bridge(number).value)
+
+    def behind(mach):
+        band = drag_band(c, 0.95, limit(2.2), bridge, number, mach=mach, **NO_DOUBT)
+        return band.below["approach to free-molecular"]
+
+    over, share = number / bridge.centre, bridge(number).value
+    wide, narrow = behind(4.0), behind(27.0)
+    # how far [Henderson1976] and [Loth2021] stay behind: the formulas of docs/method.md, written anew
+    np.testing.assert_allclose(wide, 0.33 * share / np.sqrt(1 + 0.03 * over), rtol=1e-12)
+    np.testing.assert_allclose(narrow, 0.20 * share / np.sqrt(1 + 0.10 * over), rtol=1e-12)
+    np.testing.assert_allclose(behind(15.0), 0.5 * (wide + narrow), rtol=1e-12)
+    np.testing.assert_array_equal(behind(None), wide)
+    assert np.isnan(behind(np.nan)).all()
+
+
 def test_limits_do_not_clip_the_band():
     """In deep continuum and in free-molecular flow the band still spans both sides of the limit."""
     bridge = DEFAULTS["sphere", "drag"]
