@@ -16,6 +16,7 @@ from aero.arrays import Floats, floats
 
 AZIMUTHS = 360  # around half a circle; 1e-6 of a cone's free-molecular drag up to a speed ratio of 100
 COLATITUDES = 40  # Gauss points along each part of a sphere
+SLIVER = 1e-13  # of the largest triangle's area: rounding, not surface
 TERMINATOR = 0.1  # rad; the flux bends within about 1/S of grazing incidence, so parts end this far from it
 
 
@@ -29,11 +30,38 @@ class Panels:
         Outward unit normals in body axes.
     areas : (n,) array [m2]
     centroids : (n, 3) array [m]
+    vertices : (n, 3, 3) array [m] or None
+        Corners of each panel where all are triangles.
+    quads : (n, 4, 3) array [m] or None
+        Corners of each panel where all have four sides.
     """
 
     normals: Floats
     areas: Floats
     centroids: Floats
+    vertices: Floats | None = None
+    quads: Floats | None = None
+
+    def triangles(self) -> Panels:
+        """Return the same surface in triangles, with their vertices: each four-sided panel becomes two.
+
+        Raises
+        ------
+        ValueError
+            If the panels carry no corners.
+
+        Examples
+        --------
+        >>> edge = np.eye(3)
+        >>> square = rectangles(np.zeros((1, 3)), edge[:1], edge[1:2], 1)
+        >>> square.areas, square.triangles().areas
+        (array([1.]), array([0.5, 0.5]))
+        """
+        if self.vertices is not None:
+            return self
+        if self.quads is None:
+            raise ValueError("the panels carry no corners")
+        return of_triangles(self.quads[:, [[0, 1, 2], [0, 2, 3]]].reshape(-1, 3, 3))
 
     def facets(self, angle_of_attack: float) -> Facets:
         """Return the panels as the flow at an angle of attack [rad] sees them."""
@@ -210,6 +238,18 @@ def rectangles(corner: Floats, first: Floats, second: Floats, split: int) -> Pan
     return _of_quads(quads.reshape(-1, 4, 3))
 
 
+def of_triangles(vertices: Floats) -> Panels:
+    """Return triangles (n, 3, 3) [m] as panels; their corners turn counter-clockwise seen from outside.
+
+    Triangles without an area are left out: a four-sided panel at a pole has one.
+    """
+    vectors = 0.5 * np.cross(vertices[:, 1] - vertices[:, 0], vertices[:, 2] - vertices[:, 0])
+    areas = np.sqrt((vectors * vectors).sum(axis=1))
+    keep = areas > SLIVER * areas.max(initial=0.0)
+    kept = vertices[keep]
+    return Panels(vectors[keep] / areas[keep, None], areas[keep], kept.mean(axis=1), kept)
+
+
 def _of_quads(quads: Floats) -> Panels:
     vectors = 0.5 * np.cross(quads[:, 2] - quads[:, 0], quads[:, 3] - quads[:, 1])
     areas = np.sqrt((vectors * vectors).sum(axis=1))
@@ -219,4 +259,4 @@ def _of_quads(quads: Floats) -> Panels:
     middles = [(quads[:, 0] + quads[:, i] + quads[:, i + 1]) / 3.0 for i in (1, 2)]
     weight = np.where(keep, sizes[0] + sizes[1], 1.0)[:, None]
     centroids = (sizes[0][:, None] * middles[0] + sizes[1][:, None] * middles[1]) / weight
-    return Panels(vectors[keep] / areas[keep, None], areas[keep], centroids[keep])
+    return Panels(vectors[keep] / areas[keep, None], areas[keep], centroids[keep], quads=quads[keep])

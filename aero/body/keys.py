@@ -10,6 +10,8 @@ from typing import Any, NoReturn
 from aero.errors import InputError, nearest
 from aero.units import quantity, split_header, to_si
 
+Vector = tuple[float, float, float]
+
 
 class Table:
     """One table of a TOML file and where it stands.
@@ -61,6 +63,43 @@ class Table:
         if not isinstance(found, dict):
             self.fail(key, f"is '{found}', expected a table", f"write it as [{self._name(key)}]")
         return Table(found, self.source, self.text, self._name(key))
+
+    def tables(self, key: str) -> list[Table]:
+        """Return the tables of a list of them ([[key]] in the file), named key[1], key[2], ..."""
+        found = self.value(key)
+        if found is None:
+            return []
+        if not isinstance(found, list) or not all(isinstance(one, dict) for one in found):
+            self.fail(key, f"is '{found}', expected tables", f"write each as [[{self._name(key)}]]")
+        return [
+            Table(one, self.source, self.text, f"{self._name(key)}[{number}]")
+            for number, one in enumerate(found, start=1)
+        ]
+
+    def point(self, key: str, dimension: str | None, *, required: bool = False) -> Vector | None:
+        """Return three numbers, each with a unit of `dimension` (SI) or plain where it is None."""
+        found = self.value(key, required=required)
+        if found is None:
+            return None
+        example = "[0, 1, 0]" if dimension is None else '["0.1 m", "0 m", "-5 cm"]'
+        if not isinstance(found, list) or len(found) != 3:
+            self.fail(key, f"is '{found}', expected three values (x, y, z)", f"write {key} = {example}")
+        numbers = []
+        for value in found:
+            if dimension is not None:
+                numbers.append(self._in_si(key, key, value, dimension, ()))
+            elif isinstance(value, bool) or not isinstance(value, (int, float)) or not math.isfinite(value):
+                self.fail(key, f"holds '{value}', expected a number", f"write {key} = {example}")
+            else:
+                numbers.append(float(value))
+        return numbers[0], numbers[1], numbers[2]
+
+    def switch(self, key: str) -> bool | None:
+        """Return true or false, None when absent."""
+        found = self.value(key)
+        if found is not None and not isinstance(found, bool):
+            self.fail(key, f"is '{found}', expected true or false", "write it without quotes")
+        return found
 
     def quantity(
         self,
@@ -126,7 +165,7 @@ class Table:
         """Raise an error for the first key that nobody asked for, naming the nearest known one."""
         for key in self.data:
             if key not in self._used:
-                what = "table" if isinstance(self.data[key], dict) else "key"
+                what = "table" if _is_table(self.data[key]) else "key"
                 known = ", ".join(self._known)
                 raise InputError(
                     f"unknown {what} '{self._name(key)}', expected one of: {known}",
@@ -183,11 +222,17 @@ class Table:
 
     def _line(self, key: str) -> int | None:
         wanted, current = self._name(key), ""
+        counted: dict[str, int] = {}
         for number, line in enumerate(self.text.splitlines(), start=1):
-            header = re.match(r"\s*\[+\s*([^\]]+?)\s*\]+", line)
+            header = re.match(r"\s*(\[+)\s*([^\]]+?)\s*\]+", line)
             if header:
-                current = header.group(1).replace('"', "")
-                if current == wanted or current.startswith(f"{wanted}."):
+                current = header.group(2).replace('"', "")
+                if header.group(1) == "[[":
+                    counted[current] = counted.get(current, 0) + 1
+                for listed, count in counted.items():  # the last table of a list is the one spoken of
+                    if current == listed or current.startswith(f"{listed}."):
+                        current = f"{listed}[{count}]{current[len(listed) :]}"
+                if current == wanted or current.startswith((f"{wanted}.", f"{wanted}[")):
                     return number
                 continue
             entry = re.match(r"\s*([^=#]+?)\s*=", line)
@@ -200,3 +245,7 @@ class Table:
     def _header_line(self) -> int | None:
         head, _, last = self.path.rpartition(".")
         return Table({}, self.source, self.text, head)._line(last)
+
+
+def _is_table(value: Any) -> bool:
+    return isinstance(value, dict) or (isinstance(value, list) and bool(value) and isinstance(value[0], dict))

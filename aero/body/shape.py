@@ -26,7 +26,7 @@ def angle() -> float:
 
 @dataclass(frozen=True)
 class Shape(ABC):
-    """A convex body; the fields of each kind are its dimensions in m and rad.
+    """A body; the fields of each kind are its dimensions in m and rad (a mesh has others).
 
     Raises
     ------
@@ -37,6 +37,7 @@ class Shape(ABC):
     kind: ClassVar[str]
     flat_faced: ClassVar[bool] = False
     lifts: ClassVar[bool] = True
+    mirrored: ClassVar[bool] = True  # whether z -> -z leaves the body as it is, so that half a turn tells all
 
     def __post_init__(self) -> None:
         for item in fields(self):

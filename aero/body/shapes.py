@@ -6,6 +6,7 @@ from collections.abc import Mapping
 from dataclasses import fields
 
 from aero.body.flat_bodies import Box, FlatPlate
+from aero.body.mesh import Mesh
 from aero.body.round_bodies import Cone, Cylinder, Sphere, SphereCone
 from aero.body.shape import BODY_CLASSES, Shape
 from aero.errors import InputError, choose
@@ -18,6 +19,7 @@ __all__ = [
     "Cone",
     "Cylinder",
     "FlatPlate",
+    "Mesh",
     "Shape",
     "Sphere",
     "SphereCone",
@@ -26,20 +28,22 @@ __all__ = [
 ]
 
 SHAPES: dict[str, type[Shape]] = {
-    shape.kind: shape for shape in (Sphere, Cylinder, FlatPlate, Cone, SphereCone, Box)
+    shape.kind: shape for shape in (Sphere, Cylinder, FlatPlate, Cone, SphereCone, Box, Mesh)
 }
-"""Kind in a vehicle file -> class; the fields of the class are its keys."""
+"""Kind in a vehicle file -> class; the dimensions of the class are its keys (a mesh has a file instead)."""
 
 
 def dimensions(kind: type[Shape]) -> dict[str, str]:
-    """Return the dimensions of a shape as name -> "length" or "angle".
+    """Return the dimensions of a shape as name -> "length" or "angle"; a mesh has none.
 
     Examples
     --------
     >>> dimensions(SHAPES["cone"])
     {'half_angle': 'angle', 'base_radius': 'length'}
     """
-    return {item.name: str(item.metadata["dimension"]) for item in fields(kind)}
+    return {
+        item.name: str(item.metadata["dimension"]) for item in fields(kind) if "dimension" in item.metadata
+    }
 
 
 def build_shape(
@@ -78,6 +82,10 @@ def build_shape(
     """
     built = SHAPES[choose(kind, SHAPES, "shape kind", source=source)]
     wanted = dimensions(built)
+    if not wanted:
+        raise InputError(
+            f"a {kind} needs a vehicle file", source=source, remedy=f'give one with [shape] kind = "{kind}"'
+        )
     called = dict(zip(wanted, wanted, strict=True)) | dict(flags or {})
     listed = f"its dimensions: {', '.join(called[name] for name in wanted)}"
     for name in sizes:

@@ -10,6 +10,11 @@ from aero.air.state import SPECIES, Air
 from aero.arrays import ArrayLike, Floats, floats
 
 OXYGEN_COVERAGE = "oxygen-coverage"
+MAXWELL = "maxwell"
+SURFACE_MODELS = (MAXWELL, "cll")
+"""Gas-surface models a surface may name."""
+CATALYSIS: dict[str, float | None] = {"full": 1.0, "partial": None, "none": 0.0}
+"""Catalysis of a wall -> share of atoms that recombine on it, None where the file states it."""
 LANGMUIR = 7.5e-17  # m3/K, [Pilinski2010]
 BARE_FACTOR = (
     2.4  # bare-surface accommodation 2.4 mu/(1 + mu)^2, [Goodman1976] (up to 3.6); value from memory
@@ -36,6 +41,15 @@ class Surface:
         1 means that molecules leave with the wall's temperature.
     diffuse_fraction : float
         Share of molecules re-emitted diffusely (Maxwell), the rest reflect like light.
+    model : {"maxwell", "cll"}
+        Gas-surface model: Maxwell's, or Cercignani, Lampis and Lord's, which takes the two coefficients below
+        instead of the two above.
+    normal_energy_accommodation, tangential_momentum_accommodation : float
+        Of Cercignani, Lampis and Lord.
+    catalysis : {"full", "partial", "none"}
+        Whether atoms recombine at the wall.
+    recombination : float
+        Share of the atoms striking the wall that recombine; 1 when full, 0 when none.
 
     Notes
     -----
@@ -52,6 +66,11 @@ class Surface:
     emissivity: float = 0.85
     energy_accommodation: float | str = 1.0
     diffuse_fraction: float = 1.0
+    model: str = MAXWELL
+    normal_energy_accommodation: float = 1.0
+    tangential_momentum_accommodation: float = 1.0
+    catalysis: str = "full"
+    recombination: float = 1.0
 
     def __post_init__(self) -> None:
         if self.temperature is not None and not 0.0 < self.temperature < np.inf:
@@ -66,6 +85,23 @@ class Surface:
                 raise ValueError(f"energy_accommodation is '{alpha}', expected 0 to 1 or '{OXYGEN_COVERAGE}'")
         elif not 0.0 <= alpha <= 1.0:
             raise ValueError(f"energy_accommodation is {alpha:g}, expected 0 to 1 or '{OXYGEN_COVERAGE}'")
+        self._check_model()
+
+    def _check_model(self) -> None:
+        for name, allowed in (("model", SURFACE_MODELS), ("catalysis", tuple(CATALYSIS))):
+            if getattr(self, name) not in allowed:
+                raise ValueError(f"{name} is '{getattr(self, name)}', expected one of: {', '.join(allowed)}")
+        for name in ("normal_energy_accommodation", "tangential_momentum_accommodation", "recombination"):
+            value = getattr(self, name)
+            high = 2.0 if name == "tangential_momentum_accommodation" else 1.0
+            if not 0.0 <= value <= high:
+                raise ValueError(f"{name} is {value:g}, expected 0 to {high:g}")
+        fixed = CATALYSIS[self.catalysis]
+        if fixed is not None and self.recombination != fixed:
+            raise ValueError(
+                f"recombination is {self.recombination:g} with catalysis '{self.catalysis}', expected {fixed:g}; "
+                "it belongs to catalysis 'partial'"
+            )
 
 
 def accommodation(surface: Surface, air: Air) -> Floats:
