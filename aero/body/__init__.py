@@ -1,7 +1,11 @@
 """Vehicles: the file, the shape, the surface."""
 
+from aero.body.assembly import Assembly
 from aero.body.continuum_table import ContinuumTable
+from aero.body.elements import Elements
 from aero.body.facets import Facets, Panels
+from aero.body.part import Part
+from aero.body.read_mesh import read_mesh
 from aero.body.shapes import (
     BODY_CLASSES,
     SHAPES,
@@ -9,6 +13,7 @@ from aero.body.shapes import (
     Cone,
     Cylinder,
     FlatPlate,
+    Mesh,
     Shape,
     Sphere,
     SphereCone,
@@ -22,19 +27,24 @@ from aero.body.surface import (
     accommodation_uncertainty,
     oxygen_coverage,
 )
-from aero.body.vehicle import Vehicle, read_vehicle
+from aero.body.vehicle import Vehicle
+from aero.body.vehicle_file import read_vehicle
 
 __all__ = [
     "BODY_CLASSES",
     "OXYGEN_COVERAGE",
     "SHAPES",
+    "Assembly",
     "Box",
     "Cone",
     "ContinuumTable",
     "Cylinder",
+    "Elements",
     "Facets",
     "FlatPlate",
+    "Mesh",
     "Panels",
+    "Part",
     "Shape",
     "Sphere",
     "SphereCone",
@@ -45,5 +55,6 @@ __all__ = [
     "build_shape",
     "dimensions",
     "oxygen_coverage",
+    "read_mesh",
     "read_vehicle",
 ]

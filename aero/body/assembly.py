@@ -98,5 +98,3 @@ class Assembly(Shape):
     def facets(self, angle_of_attack: float) -> Facets:
         """See `Shape`; elements behind others get no flow unless shadows are off."""
         return seen_by_flow(self._panels, angle_of_attack, shadows=self.shadows)
-
-

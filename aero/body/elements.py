@@ -4,11 +4,12 @@ from __future__ import annotations
 
 from collections.abc import Sequence
 from dataclasses import dataclass
+from functools import lru_cache
 
 import numpy as np
 from numpy.typing import NDArray
 
-from aero.arrays import Floats
+from aero.arrays import Floats, readonly
 from aero.body.part import Part
 from aero.body.surface import Surface
 
@@ -57,9 +58,14 @@ def gather(parts: Sequence[Part], count: int | None = None) -> Elements:
     """
     if not parts:
         raise ValueError("no parts, so no elements")
+    return _gathered(tuple(parts), count)
+
+
+@lru_cache(maxsize=8)
+def _gathered(parts: tuple[Part, ...], count: int | None) -> Elements:
     panels = [part.panels(count).triangles() for part in parts]
     normals, areas, centroids, vertices = (
-        np.concatenate([getattr(one, name) for one in panels])
+        readonly(np.concatenate([getattr(one, name) for one in panels]))
         for name in ("normals", "areas", "centroids", "vertices")
     )
     return Elements(

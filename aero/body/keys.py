@@ -45,14 +45,14 @@ class Table:
         name = self._name(key)
         raise InputError(f"key '{name}' {problem}", source=self.source, line=self._line(key), remedy=remedy)
 
-    def value(self, key: str, *, required: bool = False) -> Any:
+    def value(self, key: str, *, required: bool = False, example: str = "") -> Any:
         """Return a raw value, None when it is absent."""
         self._known.append(key)
         if key in self.data:
             self._used.add(key)
             return self.data[key]
         if required:
-            self._missing(key)
+            self._missing(key, example)
         return None
 
     def table(self, key: str, *, required: bool = False) -> Table | None:
@@ -144,18 +144,20 @@ class Table:
             self.fail(key, f"is {found:g}, expected {wanted}")
         return float(found)
 
-    def string(self, key: str, *, required: bool = False) -> str | None:
+    def string(self, key: str, *, required: bool = False, example: str = "") -> str | None:
         """Return a text, None when absent."""
-        found = self.value(key, required=required)
+        found = self.value(key, required=required, example=example)
         if found is None:
             return None
         if not isinstance(found, str) or not found:
             self.fail(key, f"is '{found}', expected text", "write it in quotes")
         return found
 
-    def choice(self, key: str, allowed: Iterable[str], *, required: bool = False) -> str | None:
+    def choice(
+        self, key: str, allowed: Iterable[str], *, required: bool = False, example: str = ""
+    ) -> str | None:
         """Return one of `allowed`, None when absent."""
-        found = self.string(key, required=required)
+        found = self.string(key, required=required, example=example)
         names = list(allowed)
         if found is not None and found not in names:
             self.fail(key, f"is '{found}', expected one of: {', '.join(names)}", nearest(found, names))

@@ -38,6 +38,13 @@ class MeshFile:
     vertices: Floats
     raw: bytes
 
+    @property
+    def digest(self) -> str:
+        """SHA-256 of the file."""
+        import hashlib
+
+        return hashlib.sha256(self.raw).hexdigest()
+
 
 def read_mesh(path: str | Path, unit: str, *, source: str | None = None) -> MeshFile:
     """Read a closed body from an STL (text or binary), OBJ or PLY file.
@@ -77,7 +84,9 @@ def read_mesh(path: str | Path, unit: str, *, source: str | None = None) -> Mesh
         known = ", ".join(f".{one}" for one in ENDINGS)
         guess = nearest(ending, ENDINGS) if ending else None
         raise InputError(
-            f"ends in '{place.suffix}', expected one of: {known}", source=name, remedy=guess or "export it as STL"
+            f"ends in '{place.suffix}', expected one of: {known}",
+            source=name,
+            remedy=guess or "export it as STL",
         )
     raw = _bytes(place, ending, name)
     vertices = _parsed(raw, ending, name) * scale[0]
@@ -113,7 +122,9 @@ def _bytes(place: Path, ending: str, name: str) -> bytes:
             _check_count(_stated_count(head, ending, size), name)
             if size > MOST_BYTES:
                 raise InputError(
-                    f"is {size / 1e6:,.0f} MB long, more than a million triangles take", source=name, remedy=FEWER
+                    f"is {size / 1e6:,.0f} MB long, more than a million triangles take",
+                    source=name,
+                    remedy=FEWER,
                 )
             raw = head + file.read()
     except OSError as error:
@@ -154,7 +165,9 @@ def _parsed(raw: bytes, ending: str, name: str) -> Floats:
     import trimesh  # not at the top: half a second
 
     broken = InputError(
-        f"is not a mesh that can be read as {ending.upper()}", source=name, remedy="export the body again as STL"
+        f"is not a mesh that can be read as {ending.upper()}",
+        source=name,
+        remedy="export the body again as STL",
     )
     if ending == "stl" and _binary_stl(raw[:84], len(raw)):
         return _binary_triangles(raw, name)
@@ -187,7 +200,9 @@ def _binary_triangles(raw: bytes, name: str) -> Floats:
         )
     if not count:
         raise InputError("holds no triangles, expected a closed body", source=name)
-    rows = np.frombuffer(raw, dtype=[("normal", "<f4", 3), ("corners", "<f4", (3, 3)), ("skip", "<u2")], offset=84)
+    rows = np.frombuffer(
+        raw, dtype=[("normal", "<f4", 3), ("corners", "<f4", (3, 3)), ("skip", "<u2")], offset=84
+    )
     return floats(rows["corners"])
 
 

@@ -1,20 +1,21 @@
-"""A vehicle file -> Vehicle."""
+"""What flies: mass, reference quantities, shape or parts, surface, attitude."""
 
 from __future__ import annotations
 
-import hashlib
 import math
-import tomllib
 from dataclasses import dataclass, field, replace
-from pathlib import Path
 from typing import Any
 
-from aero.body.continuum_table import ContinuumTable, read_table
-from aero.body.keys import Table
-from aero.body.shapes import SHAPES, Shape, dimensions
-from aero.body.surface import OXYGEN_COVERAGE, Surface
-from aero.errors import InputError
-from aero.units import split_header
+from aero.body.assembly import Assembly
+from aero.body.continuum_table import ContinuumTable
+from aero.body.elements import Elements, gather
+from aero.body.mesh import Mesh
+from aero.body.part import Part, Vector
+from aero.body.shapes import Shape
+from aero.body.surface import Surface
+
+MAIN_PART = "body"
+"""Name of the part that [shape] describes where there are others."""
 
 _OF_FORCE = ("centre", "width", "centre_sigma", "width_sigma", "continuum_sigma", "continuum_above")
 BRIDGED: dict[str, tuple[tuple[str, ...], tuple[str, ...]]] = {
@@ -23,7 +24,6 @@ BRIDGED: dict[str, tuple[tuple[str, ...], tuple[str, ...]]] = {
     "heating": ((), ("exponent", "sigma")),
 }
 """Coefficient that [bridging] may override -> (keys of text, keys of numbers)."""
-POSITIVE = ("centre", "width", "exponent")
 AREA_MISMATCH = 0.1  # relative; reference and frontal area further apart than this earn a note (judgement)
 
 
@@ -43,19 +43,33 @@ class Vehicle:
     lengths : dict of str to float [m]
         Every other length whose regime matters.
     shape : Shape or None
-        None leaves the free-molecular and Newtonian coefficients without an answer.
+        None leaves the free-molecular and Newtonian coefficients without an answer. With parts, their
+        `Assembly`.
     surface : Surface
-    angle_of_attack : float [rad]
+    angle_of_attack, sideslip, bank : float [rad]
         Where the trajectory states none.
+    tumbling : bool
+        Whether the vehicle has no fixed attitude: averages over all directions.
+    parts : tuple of Part
+        Empty for a plain shape.
+    shadows : bool
+        Whether elements behind others get no flow.
+    moment_point : (x, y, z) or None [m]
+        Point in body axes that moments are about.
+    moment_length : float or None [m]
+        Length of the moment coefficients; None is the reference length.
     continuum : ContinuumTable or None
     bridging : dict
         Coefficient -> the keys of `BRIDGED` that the file gives; their meaning belongs to the bridge.
     heating_nose_radius : float or None [m]
         `[heating] nose_radius`, where it is not the shape's.
+    effective_nose_radius : bool or float [m]
+        Whether heating takes an effective radius instead of the nose's (True: by the rule of the heating
+        room; a number: this one).
     source : str
         File name without folder, empty for a shape.
     digest : str
-        SHA-256 of the file (and of its coefficient file), empty for a shape.
+        SHA-256 of the file (and of the coefficient and mesh files it names), empty for a shape.
     """
 
     name: str
@@ -66,9 +80,17 @@ class Vehicle:
     shape: Shape | None = None
     surface: Surface = field(default_factory=Surface)
     angle_of_attack: float = 0.0
+    sideslip: float = 0.0
+    bank: float = 0.0
+    tumbling: bool = False
+    parts: tuple[Part, ...] = ()
+    shadows: bool = True
+    moment_point: Vector | None = None
+    moment_length: float | None = None
     continuum: ContinuumTable | None = None
     bridging: dict[str, dict[str, Any]] = field(default_factory=dict)
     heating_nose_radius: float | None = None
+    effective_nose_radius: bool | float = False
     source: str = ""
     digest: str = ""
 
@@ -107,7 +129,69 @@ class Vehicle:
                     f"The reference area is {ratio:.3g} times the shape's frontal area of "
                     f"{self.shape.frontal_area:.4g} m2; coefficients are on the reference area."
                 )
-        return tuple(found)
+        return tuple(found + self._notes_on_bodies())
+
+    def _notes_on_bodies(self) -> list[str]:
+        found = []
+        if isinstance(self.shape, Mesh) and self.shape.stated_class is None:
+            found.append(
+                f"The mesh states no body_class: default bridging and bands are the widest, those of a "
+                f"{self.shape.body_class}."
+            )
+        if isinstance(self.shape, (Mesh, Assembly)) and self.shape.body_class in ("slender", "flat-plate"):
+            found.append(
+                "Friction of a mesh or of parts is not in the continuum limit; a slender body has hardly any "
+                "continuum drag without it. Give a [continuum] table."
+            )
+        own = [part.name for part in self.parts if part.surface != self.surface]
+        if own:
+            found.append(
+                f"Drag and lift of the whole vehicle use its [surface] for every part; {', '.join(own)} "
+                f"{'has its' if len(own) == 1 else 'have their'} own, which the loads of parts use."
+            )
+        if self.shape is not None and not self.shadows and (self.parts or self.shape.kind == "mesh"):
+            found.append("Shadowing is off: elements behind others get the flow as if they stood free.")
+        return found
+
+    def elements(self, count: int | None = None) -> Elements:
+        """Return the whole surface as triangles in body axes.
+
+        Parameters
+        ----------
+        count : int, optional
+            About how many panels a part (each of two triangles; a mesh has its own). Default 8000 for curved
+            and 600 for flat-faced parts.
+
+        Raises
+        ------
+        ValueError
+            If the vehicle has no shape.
+
+        Examples
+        --------
+        >>> from aero.body.shapes import Box
+        >>> len(Vehicle.from_shape(Box(length=1.0, width=1.0, height=1.0)).elements(6))
+        12
+        """
+        if self.shape is None:
+            raise ValueError(f"{self.name} has no shape, so no elements")
+        return gather(self.parts or (Part(MAIN_PART, self.shape, self.surface),), count)
+
+    def with_parts(self, parts: tuple[Part, ...]) -> Vehicle:
+        """Return the vehicle with other parts, and their assembly as its shape."""
+        return replace(self, parts=parts, shape=Assembly(parts, self.shadows))
+
+    def with_turned(self, name: str, angle: float) -> Vehicle:
+        """Return the vehicle with a part turned to another angle [rad] of its hinge.
+
+        Raises
+        ------
+        ValueError
+            If there is no part of that name.
+        """
+        if name not in [part.name for part in self.parts]:
+            raise ValueError(f"no part '{name}'; parts: {', '.join(part.name for part in self.parts)}")
+        return self.with_parts(tuple(p.turned(angle) if p.name == name else p for p in self.parts))
 
     @classmethod
     def from_shape(cls, shape: Shape, *, name: str | None = None, surface: Surface | None = None) -> Vehicle:
@@ -129,8 +213,12 @@ class Vehicle:
         )
 
     def with_surface(self, **changes: Any) -> Vehicle:
-        """Return the vehicle with some surface values replaced (as options do)."""
-        return replace(self, surface=replace(self.surface, **changes))
+        """Return the vehicle with some surface values replaced (as options do), those of its parts too."""
+        found = replace(self, surface=replace(self.surface, **changes))
+        if not self.parts:
+            return found
+        parts = (replace(part, surface=replace(part.surface, **changes)) for part in self.parts)
+        return found.with_parts(tuple(parts))
 
     def __str__(self) -> str:
         kind = self.shape.kind if self.shape is not None else "no shape"
@@ -138,178 +226,3 @@ class Vehicle:
             f"{self.name}: {kind}, {self.mass:g} kg, reference area {self.reference_area:g} m2, "
             f"reference length {self.reference_length:g} m"
         )
-
-
-def read_vehicle(path: str | Path) -> Vehicle:
-    """Read a vehicle file.
-
-    Parameters
-    ----------
-    path : str or Path
-        TOML file.
-
-    Returns
-    -------
-    Vehicle
-
-    Raises
-    ------
-    InputError
-        If the file cannot be read, a key is missing, unknown or has a value that cannot be used.
-    """
-    place = Path(path)
-    raw, data = _load(place, str(path))
-    top = Table(data, str(path), raw.decode("utf-8-sig"))
-    reference = _required_table(top, "reference")
-    shape, surface = _shape(top), _surface(top)
-    continuum, extra = _continuum(top, place.parent)
-    vehicle = Vehicle(
-        name=top.string("name") or place.stem,
-        mass=_value(top.quantity("mass", "mass", required=True, example='"38 kg"')),
-        reference_area=_value(reference.quantity("area", "area", required=True, example='"0.64 m2"')),
-        reference_length=_value(reference.quantity("length", "length", required=True, example='"0.9 m"')),
-        lengths=_lengths(top),
-        shape=shape,
-        surface=surface,
-        angle_of_attack=_attitude(top),
-        continuum=continuum,
-        bridging=_bridging(top),
-        heating_nose_radius=_heating(top),
-        source=place.name,
-        digest=hashlib.sha256(raw + extra).hexdigest(),
-    )
-    reference.finish()
-    top.finish()
-    return vehicle
-
-
-def _load(path: Path, source: str) -> tuple[bytes, dict[str, Any]]:
-    try:
-        raw = path.read_bytes()
-    except OSError as error:
-        raise InputError(
-            f"cannot be read: {error.strerror}",
-            source=source,
-            remedy="give the path of a vehicle file (TOML)",
-        ) from None
-    try:
-        return raw, tomllib.loads(raw.decode("utf-8-sig"))
-    except UnicodeDecodeError:
-        raise InputError("is not UTF-8 text, expected TOML", source=source) from None
-    except tomllib.TOMLDecodeError as error:
-        raise InputError(
-            f"is not valid TOML: {error}",
-            source=source,
-            remedy='values with a unit are text in quotes, such as mass = "38 kg"',
-        ) from None
-
-
-def _required_table(top: Table, key: str) -> Table:
-    found = top.table(key, required=True)
-    assert found is not None
-    return found
-
-
-def _value(found: float | str | None) -> float:
-    assert isinstance(found, float)
-    return found
-
-
-def _shape(top: Table) -> Shape | None:
-    table = top.table("shape")
-    if table is None:
-        return None
-    kind = table.choice("kind", SHAPES, required=True)
-    assert kind is not None
-    sizes = {
-        name: _value(table.quantity(name, dimension, required=True, example=_example(dimension)))
-        for name, dimension in dimensions(SHAPES[kind]).items()
-    }
-    table.finish()
-    try:
-        return SHAPES[kind](**sizes)
-    except ValueError as error:
-        table.fail("kind", f"is '{kind}', but {error}", "mend the dimensions")
-
-
-def _example(dimension: str) -> str:
-    return '"55 deg"' if dimension == "angle" else '"0.5 m"'
-
-
-def _surface(top: Table) -> Surface:
-    table = top.table("surface")
-    if table is None:
-        return Surface()
-    default = Surface()
-    temperature = table.quantity("temperature", "temperature", words=("radiative",))
-    chosen = default.temperature if temperature is None else temperature
-    emissivity = table.number("emissivity", 0.0, 1.0, open_low=True)
-    accommodation = table.number("energy_accommodation", 0.0, 1.0, words=(OXYGEN_COVERAGE,))
-    diffuse = table.number("diffuse_fraction", 0.0, 1.0)
-    table.finish()
-    return Surface(
-        temperature=None if chosen == "radiative" else float(chosen or 0.0),
-        emissivity=default.emissivity if emissivity is None else float(emissivity),
-        energy_accommodation=default.energy_accommodation if accommodation is None else accommodation,
-        diffuse_fraction=default.diffuse_fraction if diffuse is None else float(diffuse),
-    )
-
-
-def _lengths(top: Table) -> dict[str, float]:
-    table = top.table("lengths")
-    if table is None:
-        return {}
-    found: dict[str, float] = {}
-    for key, value in table.data.items():
-        suffixed = not isinstance(value, str) and split_header(key).unit is not None
-        name = key.rpartition("_")[0] if suffixed else key
-        if name == "reference" or name in found:
-            why = "is taken by [reference] length" if name == "reference" else "is given twice"
-            table.fail(key, why, "choose another name")
-        if not name:
-            table.fail(key, "has no name", "name the length")
-        found[name] = _value(table.quantity(name, "length", required=True))
-    return found
-
-
-def _attitude(top: Table) -> float:
-    table = top.table("attitude")
-    if table is None:
-        return 0.0
-    angle = table.quantity("angle_of_attack", "angle", positive=False)
-    table.finish()
-    if angle is not None and abs(_value(angle)) > math.pi:
-        table.fail("angle_of_attack", "is more than half a turn, expected -180 deg to 180 deg")
-    return 0.0 if angle is None else _value(angle)
-
-
-def _heating(top: Table) -> float | None:
-    table = top.table("heating")
-    if table is None:
-        return None
-    radius = table.quantity("nose_radius", "length")
-    table.finish()
-    return None if radius is None else _value(radius)
-
-
-def _continuum(top: Table, folder: Path) -> tuple[ContinuumTable | None, bytes]:
-    table = top.table("continuum")
-    return (None, b"") if table is None else read_table(table, folder)
-
-
-def _bridging(top: Table) -> dict[str, dict[str, Any]]:
-    table = top.table("bridging")
-    if table is None:
-        return {}
-    found: dict[str, dict[str, Any]] = {}
-    for coefficient, (texts, numbers) in BRIDGED.items():
-        entry = table.table(coefficient)
-        if entry is None:
-            continue
-        values: dict[str, Any] = {key: entry.string(key) for key in texts}
-        for key in numbers:
-            values[key] = entry.number(key, 0.0, math.inf, open_low=key in POSITIVE)
-        entry.finish()
-        found[coefficient] = {key: value for key, value in values.items() if value is not None}
-    table.finish()
-    return found
