@@ -100,8 +100,8 @@ def other_units(size: float, unit: str, wanted: float) -> list[str]:
 
     Examples
     --------
-    >>> other_units(900.0, "m", 0.9)
-    ['mm']
+    >>> other_units(800.0, "m", 0.9)
+    ['mm', 'cm']
     """
     length = UNITS["length"]
     found = []

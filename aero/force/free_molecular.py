@@ -209,13 +209,11 @@ def _at_one_angle(shape: Shape, diffuse: float, angle: float) -> _Lookup:
 
 
 def _over_angles(shape: Shape, diffuse: float, angles: Floats) -> _Lookup:
-    """Tables over angle of attack: a body of revolution is symmetric, so half a turn is enough."""
+    """Tables over angle of attack, half a turn where z -> -z leaves the body as it is."""
     tables = speed_table.angle_table(shape, diffuse)
 
     def look_up(log_ratio: Floats, part: slice) -> _Rows:
-        here = np.remainder(angles[part] + np.pi, 2.0 * np.pi) - np.pi
-        side = np.where(here < 0.0, -1.0, 1.0)
-        place = np.abs(here) / speed_table.ANGLE_STEP
+        place, side = speed_table.place_in_turn(shape, angles[part])
         unknown = ~np.isfinite(place)
         angle_cell = np.where(unknown, 0.0, place).astype(np.intp)
         tables.fill(angle_cell)

@@ -95,7 +95,7 @@ def axial_friction(
     pressure_coefficient: ArrayLike,
     angle_of_attack: ArrayLike,
 ) -> Floats:
-    """Return the axial force of friction over dynamic pressure [m2], 0 for a body class without friction.
+    """Return the axial force of friction over dynamic pressure [m2], 0 for blunt bodies and meshes.
 
     Parameters
     ----------
@@ -115,7 +115,8 @@ def axial_friction(
     pressure on the other. Cone: speed V cos(half angle), Newtonian pressure at zero angle of attack, times
     cos(a)^(3/2), 0 base first; a spherical nose is taken as part of the cone. Positive towards the rear.
     """
-    if shape.body_class not in FRICTION_CLASSES:
+    known = isinstance(shape, (Cone, SphereCone, FlatPlate))
+    if not known or shape.body_class not in FRICTION_CLASSES:
         return np.zeros(np.broadcast_shapes(np.shape(mach), np.shape(angle_of_attack)))
     cosine, sine = np.cos(floats(angle_of_attack)), np.sin(floats(angle_of_attack))
     M, gamma = floats(mach), floats(heat_capacity_ratio)

@@ -9,7 +9,7 @@ import numpy as np
 
 from aero.arrays import ArrayLike, Floats, floats
 from aero.body.shapes import Shape
-from aero.force.speed_table import ANGLE_STEP, ANGLES, angle_weights
+from aero.force.speed_table import angle_count, angle_weights, missing_angles, place_in_turn, table_angle
 
 # Equilibrium air over a calorically perfect gas of 1.4 in pitot pressure coefficient: fit to normal shocks
 # computed from partition functions at 60 and 70 km, 1-12 km/s (tests/force/equilibrium_air.py); largest
@@ -17,6 +17,7 @@ from aero.force.speed_table import ANGLE_STEP, ANGLES, angle_weights
 REAL_GAS = (0.0664, 2196.0, 0.0388, 4581.0)  # rise, speed [m/s] of oxygen's and of nitrogen's dissociation
 
 BASE_SIGMA = 0.30  # relative 1-sigma of base pressure, judgement
+ABOVE = 0.05  # relative, drag of a 60-70 degree cone over its Newtonian value, judgement
 LEE_FULL = 0.5  # base pressure holds on faces turned 30 deg or more away from the flow, judgement
 
 
@@ -131,7 +132,7 @@ def above_newtonian(shape: Shape) -> float:
     Notes
     -----
     A cone of 60-70 degrees half angle has a detached shock, a nearly sonic face and 5 % more drag than the
-    Newtonian value; ramp from 55 degrees (judgement).
+    Newtonian value; ramp from 55 degrees (judgement). The whole 5 % for a mesh whose class is blunt-cone.
 
     Examples
     --------
@@ -139,8 +140,10 @@ def above_newtonian(shape: Shape) -> float:
     >>> above_newtonian(Cone(half_angle=np.radians(65.0), base_radius=1.0))
     0.05
     """
-    half_angle = float(np.degrees(getattr(shape, "half_angle", 0.0)))
-    return float(np.interp(half_angle, [55.0, 60.0], [0.0, 0.05]))
+    if not hasattr(shape, "half_angle"):  # a mesh said to be a blunt cone may be any of them
+        return ABOVE if shape.body_class == "blunt-cone" else 0.0
+    half_angle = float(np.degrees(shape.half_angle))
+    return float(np.interp(half_angle, [55.0, 60.0], [0.0, ABOVE]))
 
 
 def _lee(cosine: Floats) -> Floats:
@@ -175,8 +178,9 @@ def integrals(shape: Shape, angle_of_attack: ArrayLike) -> Integrals:
 
     Notes
     -----
-    One angle: from the facets. Several: flat faces in closed form, bodies of revolution from a table at
-    every half degree, cubic between (2e-6 of the frontal area).
+    One angle: from the facets. Several: flat faces in closed form, other bodies from a table at every half
+    degree, cubic between (2e-6 of the frontal area for bodies of revolution, 1e-3 of a face for a mesh with
+    large flat faces near the angles where base pressure sets in).
     """
     angles = floats(angle_of_attack)
     if not shape.lifts:
@@ -199,19 +203,31 @@ def _of_slabs(shape: Shape, angles: Floats) -> Integrals:
     return Integrals(*total)
 
 
+class _AngleRows:
+    """The integrals of a body at every half degree of angle of attack, each made when first asked for."""
+
+    def __init__(self, shape: Shape) -> None:
+        self.shape = shape
+        self.rows = np.full((len(Integrals._fields), angle_count(shape)), np.nan)
+        self.made = np.zeros(angle_count(shape), dtype=bool)
+
+    def fill(self, cell: np.ndarray) -> None:
+        for index in missing_angles(cell, self.made):
+            self.rows[:, index] = integrals_at(self.shape, table_angle(self.shape, index))
+            self.made[index] = True
+
+
 @lru_cache(maxsize=8)
-def _table(shape: Shape) -> Floats:
-    rows = [integrals_at(shape, (index - 1) * ANGLE_STEP) for index in range(ANGLES)]
-    return np.array(rows).T
+def _table(shape: Shape) -> _AngleRows:
+    return _AngleRows(shape)
 
 
 def _of_table(shape: Shape, angles: Floats) -> Integrals:
     table = _table(shape)
-    here = np.remainder(angles + np.pi, 2.0 * np.pi) - np.pi
-    place = np.abs(here) / ANGLE_STEP
+    place, side = place_in_turn(shape, angles)
     unknown = ~np.isfinite(place)
     cell = np.where(unknown, 0.0, place).astype(np.intp)
+    table.fill(cell)
     weights = angle_weights(np.where(unknown, np.nan, place - cell))
-    rows = [sum(weights[k] * row[cell + k] for k in range(4)) for row in table]
-    side = np.where(here < 0.0, -1.0, 1.0)
+    rows = [sum(weights[k] * row[cell + k] for k in range(4)) for row in table.rows]
     return Integrals(floats(rows[0]), floats(rows[1] * side), floats(rows[2]), floats(rows[3] * side))

@@ -7,8 +7,9 @@ import pytest
 from hypothesis import given, settings
 from hypothesis import strategies as st
 
-from aero.body import SHAPES, Box, Cone, Cylinder, FlatPlate, Sphere, SphereCone
+from aero.body import SHAPES, Box, Cone, Cylinder, FlatPlate, Mesh, Sphere, SphereCone
 
+POLYHEDRON = Cone(half_angle=np.radians(40.0), base_radius=0.4).panels(60)
 EXAMPLES = {
     "sphere": Sphere(diameter=1.3),
     "cylinder": Cylinder(diameter=0.4, length=1.1),
@@ -16,6 +17,7 @@ EXAMPLES = {
     "cone": Cone(half_angle=np.radians(20.0), base_radius=0.4),
     "sphere-cone": SphereCone(nose_radius=0.27, half_angle=np.radians(55.0), base_radius=0.45),
     "box": Box(length=0.3, width=0.2, height=0.1),
+    "mesh": Mesh.of(POLYHEDRON),
 }
 SIDE = {  # whole wetted area, from the textbook formula of each body
     "sphere": np.pi * 1.3**2,
@@ -26,6 +28,11 @@ SIDE = {  # whole wetted area, from the textbook formula of each body
     + np.pi * (0.45**2 - (0.27 * np.cos(np.radians(55.0))) ** 2) / np.sin(np.radians(55.0))
     + np.pi * 0.45**2,
     "box": 2 * (0.3 * 0.2 + 0.2 * 0.1 + 0.3 * 0.1),
+    # a pyramid of 30 sides: base 15 r^2 sin(12 deg); sides 15 edges times their height
+    "mesh": 15 * 0.4**2 * np.sin(np.radians(12.0))
+    + 30
+    * (0.4 * np.sin(np.radians(6.0)))
+    * np.hypot(0.4 / np.tan(np.radians(40.0)), 0.4 * np.cos(np.radians(6.0))),
 }
 ANGLES = (0.0, 0.1, 0.7, np.pi / 2, 2.0, 3.0, np.pi, -0.4)
 

@@ -8,7 +8,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from aero.air.state import MOLECULE_MASS
-from aero.body import SHAPES, Box, Cone, Cylinder, FlatPlate, Sphere, SphereCone, Vehicle
+from aero.body import SHAPES, Box, Cone, Cylinder, FlatPlate, Mesh, Sphere, SphereCone, Vehicle
 from aero.constants import BOLTZMANN
 from aero.force import elements, free_molecular, speed_table
 from aero.gas import flow, mixed_air
@@ -20,6 +20,7 @@ BODIES = {
     "cone": Cone(half_angle=np.radians(20.0), base_radius=0.4),
     "sphere-cone": SphereCone(nose_radius=0.27, half_angle=np.radians(55.0), base_radius=0.45),
     "box": Box(length=0.3, width=0.2, height=0.1),
+    "mesh": Mesh.of(SphereCone(nose_radius=0.1, half_angle=0.7, base_radius=0.3).panels(900)),
 }
 ORBIT = [0.20, 0.01, 0.70, 0.02, 0.001, 0.06, 0.009]
 OXYGEN = [0, 0, 1, 0, 0, 0, 0]

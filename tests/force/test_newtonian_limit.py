@@ -11,7 +11,18 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 from scipy import integrate
 
-from aero.body import SHAPES, Box, Cone, ContinuumTable, Cylinder, FlatPlate, Sphere, SphereCone, Vehicle
+from aero.body import (
+    SHAPES,
+    Box,
+    Cone,
+    ContinuumTable,
+    Cylinder,
+    FlatPlate,
+    Mesh,
+    Sphere,
+    SphereCone,
+    Vehicle,
+)
 from aero.force import above_newtonian, continuum, free_molecular
 from aero.force.friction import held_reynolds, plate_friction
 from aero.force.newtonian import (
@@ -30,6 +41,7 @@ BODIES = {
     "cone": Cone(half_angle=np.radians(12.0), base_radius=0.4),
     "sphere-cone": SphereCone(nose_radius=0.27, half_angle=np.radians(55.0), base_radius=0.45),
     "box": Box(length=0.3, width=0.2, height=0.1),
+    "mesh": Mesh.of(SphereCone(nose_radius=0.1, half_angle=0.7, base_radius=0.3).panels(900)),
 }
 
 

@@ -196,6 +196,9 @@ def test_a_mass_scales_what_it_should(entry: Trajectory, body: Vehicle) -> None:
     assert row["drag_deceleration_m_s2"] == pytest.approx(force / 38.0, rel=1e-12)
 
 
+PYRAMID = SHAPES["cone"](half_angle=0.6, base_radius=0.3).panels(24).triangles().vertices
+
+
 @settings(max_examples=60, deadline=None, suppress_health_check=[HealthCheck.function_scoped_fixture])
 @given(
     altitude=st.floats(-5e3, 1000e3),
@@ -215,6 +218,7 @@ def test_no_gap_over_the_whole_input_space(
         "cone": {"half_angle": 0.3, "base_radius": 0.3},
         "sphere-cone": {"nose_radius": 0.1, "half_angle": 0.8, "base_radius": 0.3},
         "box": {"length": 0.3, "width": 0.2, "height": 0.1},
+        "mesh": {"vertices": PYRAMID, "digest": "pyramid"},
     }
     vehicle = Vehicle.from_shape(SHAPES[kind](**sizes[kind])).with_surface(energy_accommodation=alpha)
     vehicle = dataclasses.replace(vehicle, mass=10.0, heating_nose_radius=0.2)
