@@ -17,6 +17,7 @@ COMMANDS = {
     "point": "Tell everything known about one flight condition.",
     "air": "Show an atmosphere as a table or a figure.",
     "fly": "Fly an entry and write its trajectory.",
+    "database": "Compute coefficients over a grid, for any flight simulation.",
 }
 
 

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from pathlib import Path
-from typing import Any
+from typing import TYPE_CHECKING, Any
 
 import click
 
@@ -11,6 +11,9 @@ from aero.cli import options as shared
 from aero.cli.point import missing_of
 from aero.cli.show import CAUTION, print_csv, print_json, say, show
 from aero.errors import InputError
+
+if TYPE_CHECKING:
+    from aero.survey.database import Database
 
 
 @click.command(
@@ -23,6 +26,13 @@ from aero.errors import InputError
     "--ballistic-coefficient",
     type=shared.Quantity("ballistic coefficient", "100kg/m2"),
     help="A constant m/(C_D A) in place of the vehicle's own drag; no vehicle file is then needed.",
+)
+@click.option(
+    "--database",
+    "database_file",
+    type=click.Path(),
+    metavar="FILE|DIR",
+    help="Interpolate coefficients and heat flux in what aero database wrote, and compute none.",
 )
 @click.option(
     "--altitude", type=shared.Quantity("length", "120km"), required=True, help="Geodetic, of the start."
@@ -85,6 +95,7 @@ def command(**options: Any) -> None:
         epoch=options["date"],
         ballistic_coefficient=options["ballistic_coefficient"],
         angle_of_attack=options["angle_of_attack"],
+        database=_database(options),
         settings=shared.settings_from(**options),
         until=_until(options),
         step=options["step"],
@@ -109,6 +120,27 @@ _ASSUMED = {
     "longitude": "the start is at longitude 0",
     "heading": "the flight heads due east",
 }
+
+
+def _database(options: dict[str, Any]) -> Database | None:
+    """Return the database the coefficients come from; options that would act on computing them are refused."""
+    if options["database_file"] is None:
+        return None
+    acting = {
+        "--wall-temperature": options["wall"] is not None,
+        "--perfect-gas": options["perfect_gas"],
+        "--convective": options["convective"] != "sutton-graves",
+    }
+    for name, given in acting.items():
+        if given:
+            raise InputError(
+                "does not act on a database, whose coefficients are computed already",
+                source=name,
+                remedy="drop it, or make the database with it",
+            )
+    from aero.survey.database import Database
+
+    return Database.read(options["database_file"])
 
 
 def _check_out(options: dict[str, Any]) -> None:
@@ -141,6 +173,8 @@ def _until(options: dict[str, Any]) -> float | None:
 def _recipe(options: dict[str, Any], air: str) -> str:
     """Return what the flight was made with, as a comment of its file."""
     body = Path(options["vehicle_file"]).name if options["vehicle_file"] else "no vehicle file"
+    if options["database_file"]:
+        body += f" and {Path(options['database_file']).name}"
     return f"flown by aero fly with {body}; air: {air}"
 
 

@@ -10,17 +10,28 @@ import numpy as np
 
 from aero.arrays import Floats
 from aero.errors import InputError
-from aero.flight.forces import HeatFlux, air_along, constant, deceleration, heating, in_air, vehicle_loads
+from aero.flight.forces import (
+    HeatFlux,
+    air_along,
+    constant,
+    database_loads,
+    deceleration,
+    heating,
+    in_air,
+    vehicle_loads,
+)
 from aero.flight.motion import DAY, AirAlong, AreaPerMass, integrate
 from aero.flight.path import Path, States
 from aero.flight.planet import Planet, earth
 from aero.flight.result import Flight, Peak
 from aero.flight.start import DEGREE, check, start
+from aero.survey.plain import plain_json
 
 if TYPE_CHECKING:
     from aero.air.state import Atmosphere
     from aero.body import Vehicle
     from aero.survey import Settings
+    from aero.survey.database import Database
 
 ROWS = 1000  # a step chosen by us gives at most so many rows
 MOST_ROWS = 10_000_000  # a step that asks for more is a slip of the unit
@@ -43,6 +54,7 @@ def fly(
     epoch: np.datetime64 | None = None,
     ballistic_coefficient: float | None = None,
     angle_of_attack: float | None = None,
+    database: Database | None = None,
     settings: Settings | None = None,
     until: float | None = None,
     step: float | None = None,
@@ -75,8 +87,10 @@ def fly(
         A constant m/(C_D A) in place of the vehicle's drag and lift.
     angle_of_attack : float, optional [rad]
         Held all the way; the vehicle's own when None. The bank angle is 0: lift acts in the vertical plane.
+    database : aero.survey.database.Database, optional
+        Drag, lift and heat flux between its nodes in place of the vehicle's own, which are then not computed.
     settings : aero.survey.Settings, optional
-        Wall, convective correlation and gas model, as for a survey.
+        Wall, convective correlation and gas model, as for a survey; a database has its own.
     until : float, optional [s]
         Time at which the flight ends at the latest; one day when None.
     step : float, optional [s]
@@ -118,7 +132,11 @@ def fly(
     air = air_along(atmosphere, epoch)
     if tolerance is None:
         tolerance = TOLERANCE_SINGLE if atmosphere.needs_place else TOLERANCE
-    area_per_mass, heat_flux, notes = _loads(vehicle, ballistic_coefficient, angle_of_attack, settings)
+    area_per_mass, heat_flux, notes = _loads(
+        vehicle, ballistic_coefficient, angle_of_attack, settings, database
+    )
+    if database is not None and vehicle is not None:
+        notes += _database_notes(database, vehicle, atmosphere)
     path = integrate(
         position,
         velocity,
@@ -150,10 +168,20 @@ def _loads(
     ballistic_coefficient: float | None,
     angle_of_attack: float | None,
     settings: Settings | None,
+    database: Database | None,
 ) -> tuple[AreaPerMass, HeatFlux | None, tuple[str, ...]]:
     """Return drag and lift, heat flux where there is a nose radius, and what was assumed."""
     check("--ballistic-coefficient", ballistic_coefficient, 0.0, 1e6, "kg/m2", above=True)
     check("--angle-of-attack", angle_of_attack, -180.0, 180.0, "deg", scale=DEGREE)
+    if database is not None and (vehicle is None or ballistic_coefficient is not None):
+        absent = vehicle is None
+        raise InputError(
+            "needs a vehicle, for its mass and area"
+            if absent
+            else "does not go with --ballistic-coefficient",
+            source="--database",
+            remedy="give --vehicle FILE" if absent else "drop one of them",
+        )
     if vehicle is None and ballistic_coefficient is None:
         raise InputError(
             "nothing says how the flight is slowed down",
@@ -168,7 +196,10 @@ def _loads(
                 source=vehicle.source or vehicle.name,
                 remedy='give mass = "... kg" in a vehicle file',
             )
-        area_per_mass, heat_flux = vehicle_loads(vehicle, angle_of_attack, settings)
+        if database is not None:
+            area_per_mass, heat_flux = database_loads(vehicle, database, angle_of_attack)
+        else:
+            area_per_mass, heat_flux = vehicle_loads(vehicle, angle_of_attack, settings)
     if ballistic_coefficient is not None:
         note = (
             f"Drag is that of a constant ballistic coefficient of {ballistic_coefficient:g} kg/m2; no lift."
@@ -176,6 +207,28 @@ def _loads(
         return constant(ballistic_coefficient), heat_flux, (note,)
     assert area_per_mass is not None
     return area_per_mass, heat_flux, ()
+
+
+def _database_notes(database: Database, vehicle: Vehicle, atmosphere: Atmosphere) -> tuple[str, ...]:
+    """Return how the coefficients were made and what of that differs from the flight."""
+    record = database.record
+    source = database.source or "a database"
+    error = record.get("interpolation", {}).get("drag_coefficient", {})
+    told = ""
+    if error.get("largest_error") is not None:
+        most, worst = (100.0 * error[key] for key in ("error_of_95_percent", "largest_error"))
+        told = f"; its drag interpolates to {most:.2g} % in 95 % of its cells, to {worst:.2g} % in the worst"
+    notes = [f"Drag, lift and heat flux are interpolated in {source}{told}."]
+    if record.get("vehicle", {}).get("sha256", vehicle.digest) != vehicle.digest:
+        notes.append(f"{source} was made from another version of the vehicle file.")
+    if record.get("atmosphere", atmosphere.provenance()) != plain_json(atmosphere.provenance()):
+        notes.append(
+            f"{source} was made in another atmosphere than the flight's; its coefficients and heat flux are those "
+            "of its own air at the altitude."
+        )
+    elif atmosphere.needs_place:
+        notes.append(f"{source} was made at one place and date, which the flight leaves.")
+    return tuple(notes)
 
 
 def _angle(

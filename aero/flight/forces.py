@@ -4,7 +4,7 @@ from __future__ import annotations
 
 from collections.abc import Callable
 from dataclasses import dataclass
-from typing import TYPE_CHECKING, Any, cast
+from typing import TYPE_CHECKING, Any, NoReturn, cast
 
 import numpy as np
 
@@ -17,6 +17,7 @@ from aero.flight.path import States
 if TYPE_CHECKING:
     from aero.arrays import ArrayLike
     from aero.body import Vehicle
+    from aero.survey.database import Database
     from aero.survey.settings import Settings
 
 HeatFlux = Callable[[Air, Floats], Floats]
@@ -147,6 +148,78 @@ def vehicle_loads(
         return floats(columns(air, speed)["heat_flux_W_m2"])
 
     return area_per_mass, None if vehicle.nose_radius is None else heat_flux
+
+
+def database_loads(
+    vehicle: Vehicle, database: Database, angle_of_attack: float | None
+) -> tuple[AreaPerMass, HeatFlux | None]:
+    """Return drag and lift, and heat flux, of a vehicle between the nodes of a database.
+
+    Parameters
+    ----------
+    vehicle : Vehicle
+        For its mass and reference area.
+    database : Database
+        Its heat flux is that of its own air at the altitude, its coefficients too.
+    angle_of_attack : float or None [rad]
+        Held all the way, without sideslip; None takes the vehicle's own.
+
+    Returns
+    -------
+    area_per_mass, heat_flux
+        As `vehicle_loads`; heat_flux None where the database has none.
+
+    Raises
+    ------
+    InputError
+        If the database lacks a column, was made on another reference area, or, in flight, has no answer.
+    """
+    angle = vehicle.angle_of_attack if angle_of_attack is None else angle_of_attack
+    loading = vehicle.reference_area / vehicle.mass
+    _check_database(vehicle, database)
+
+    def ask(names: tuple[str, ...], air: Air, speed: Floats) -> list[Floats]:
+        found = database.at(air.altitude, speed, angle, 0.0, columns=names)
+        for values in found.values():
+            missing = np.flatnonzero(np.isnan(values))
+            if missing.size:
+                _outside(database, float(air.altitude[missing[0]]), float(speed[missing[0]]), angle)
+        return list(found.values())
+
+    def area_per_mass(air: Air, speed: Floats) -> tuple[Floats, Floats]:
+        drag, lift = ask(("drag_coefficient", "lift_coefficient"), air, speed)
+        return loading * drag, loading * lift
+
+    def heat_flux(air: Air, speed: Floats) -> Floats:
+        return ask(("heat_flux_W_m2",), air, speed)[0]
+
+    heated = "heat_flux_W_m2" in database.columns
+    known = heated and bool(np.isfinite(database.columns["heat_flux_W_m2"]).any())
+    return area_per_mass, heat_flux if known else None
+
+
+def _check_database(vehicle: Vehicle, database: Database) -> None:
+    for name in ("drag_coefficient", "lift_coefficient"):
+        if name not in database.columns:
+            raise InputError(
+                f"has no column '{name}'", source=database.source, remedy="make it with aero database"
+            )
+    area = database.record.get("vehicle", {}).get("reference_area_m2")
+    if area is not None and abs(area / vehicle.reference_area - 1.0) > 1e-9:
+        raise InputError(
+            f"was made on a reference area of {area:g} m2, and the vehicle has {vehicle.reference_area:g} m2",
+            source=database.source,
+            remedy="make it again from this vehicle file",
+        )
+
+
+def _outside(database: Database, altitude: float, speed: float, angle: float) -> NoReturn:
+    raise InputError(
+        f"has no answer at {altitude / 1e3:.6g} km, {speed / 1e3:.6g} km/s, angle of attack "
+        f"{np.degrees(angle):g} deg and no sideslip; it covers {database.reach}",
+        source=database.source or "database",
+        remedy="make one that covers the whole flight, down to the speed of the landing",
+    )
 
 
 def deceleration(air: AirAlong, area_per_mass: AreaPerMass) -> Callable[[States], Floats]:

@@ -26,6 +26,7 @@ class Inputs:
     utc : (n,) array of datetimes or None
     angle_of_attack : (n,) array or None [rad]
     wall_temperature : (n,) array or None [K]
+    sideslip : (n,) array or None [rad]
     """
 
     altitude: Floats
@@ -35,6 +36,7 @@ class Inputs:
     utc: Times | None = None
     angle_of_attack: Floats | None = None
     wall_temperature: Floats | None = None
+    sideslip: Floats | None = None
 
 
 def air_at(inputs: Inputs, atmosphere: Atmosphere) -> Air:

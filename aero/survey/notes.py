@@ -70,6 +70,20 @@ def point_notes(
     return tuple(notes)
 
 
+def grid_notes(
+    vehicle: Vehicle,
+    atmosphere: Atmosphere,
+    settings: Settings,
+    altitude: np.ndarray,
+    speed: np.ndarray,
+    columns: Mapping[str, np.ndarray],
+    date: np.datetime64 | None,
+) -> tuple[str, ...]:
+    """Return the notes of an aerodynamic database, whose rows are given as arrays (n,)."""
+    utc = None if date is None else np.full(altitude.shape, date)
+    return tuple(_common(vehicle, atmosphere, settings, altitude, speed, columns, utc))
+
+
 def _common(
     vehicle: Vehicle | None,
     atmosphere: Atmosphere,

@@ -73,17 +73,17 @@ def _check(path: Path, *, replace: bool, folder: bool) -> None:
         raise InputError("exists", source=str(path), remedy="choose another name or pass --replace")
 
 
-def check_target(target: str | Path, *, replace: bool, folder: bool) -> None:
+def check_target(target: str | Path, *, replace: bool, folder: bool, ours: str = "survey.json") -> None:
     """Raise early what `whole` would raise about an existing target, before any long work.
 
-    With `replace`, a folder is replaced only when it holds an earlier output of ours (or nothing), so that a
-    mistyped name cannot wipe somebody's files.
+    With `replace`, a folder is replaced only when it holds an earlier output of ours (or nothing), known by the
+    file `ours` in it, so that a mistyped name cannot wipe somebody's files.
     """
     path = Path(target)
     _check(path, replace=replace, folder=folder)
-    if folder and replace and path.is_dir() and any(path.iterdir()) and not (path / "survey.json").is_file():
+    if folder and replace and path.is_dir() and any(path.iterdir()) and not (path / ours).is_file():
         raise InputError(
-            "is a folder that holds no survey, so it is not replaced",
+            f"is a folder that holds no {ours.partition('.')[0]}, so it is not replaced",
             source=str(path),
             remedy="choose another name",
         )

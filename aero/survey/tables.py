@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable
+from collections.abc import Callable, Mapping
 from pathlib import Path
 
 import numpy as np
@@ -12,17 +12,24 @@ BLOCK = 65_536  # rows written at a time: large enough for the writers, small ag
 Progress = Callable[[int], None]
 
 
-def write_parquet(table: pd.DataFrame, path: Path, progress: Progress | None = None) -> None:
+def write_parquet(
+    table: pd.DataFrame,
+    path: Path,
+    progress: Progress | None = None,
+    metadata: Mapping[str, str] | None = None,
+) -> None:
     """Write a table as Parquet in row groups; a missing number stays NaN, a missing name null.
 
-    Dictionary encoding and statistics are off for numbers: flight data rarely repeats, and the two cost
-    more time than the rest.
+    `metadata` goes into the schema. Dictionary encoding and statistics are off for numbers: flight data rarely
+    repeats, and the two cost more time than the rest.
     """
     import pyarrow as pa
     import pyarrow.parquet as pq
 
     arrays = {name: _plain(table[name]) for name in table.columns}
     schema = pa.schema([pa.field(name, _arrow_type(values)) for name, values in arrays.items()])
+    if metadata:
+        schema = schema.with_metadata(dict(metadata))
     names = [f.name for f in schema if pa.types.is_dictionary(f.type)]
     with pq.ParquetWriter(
         path, schema, compression="none", use_dictionary=names, write_statistics=False
