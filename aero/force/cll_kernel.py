@@ -97,14 +97,14 @@ def rice_mean(square: Floats, spread: Floats, kept: Floats) -> Floats:
     >>> round(float(rice_mean(np.array(4.0), np.array(1e-9), np.array(1.0))), 6)
     2.0
     """
-    x = kept * square / spread
-    place = (x - _SCALE) / (x + _SCALE)
+    held, wide = kept * square, _SCALE * spread
+    place = (held - wide) / (held + wide)  # (x - 3)/(x + 3), which no narrow kernel overflows
     first, *rest = _polynomial()
     factor = np.full_like(place, first)
     for coefficient in rest:
         factor *= place
         factor += coefficient
-    return 0.5 * SQRT_PI * np.sqrt(spread + (4.0 / np.pi) * kept * square) * factor
+    return 0.5 * SQRT_PI * np.sqrt(spread + (4.0 / np.pi) * held) * factor
 
 
 @lru_cache(maxsize=1)
