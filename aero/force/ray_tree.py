@@ -16,7 +16,7 @@ from aero.arrays import Floats, floats
 
 LEAF = 4  # triangles in a leaf
 RAYS = 20_000  # rays walked at once: some 30 MB
-EDGE = 1e-9  # relative widening of a triangle, so that no ray slips between two neighbours
+EDGE = 1e-9  # relative widening of triangles and boxes, so that no ray slips between two neighbours
 NEAR = 1e-9  # of the body's size: nearer is the surface a ray starts on, or the other face of that sheet
 Indices = NDArray[np.intp]
 
@@ -71,8 +71,9 @@ def build_tree(vertices: Floats) -> RayTree:
     index[place] = order
     sorted_corners = np.full((leaves * LEAF, 3, 3), np.nan)
     sorted_corners[place] = corners[order]
-    low = np.fmin.reduce(sorted_corners.reshape(leaves, -1, 3), axis=1)
-    high = np.fmax.reduce(sorted_corners.reshape(leaves, -1, 3), axis=1)
+    wider = EDGE * float(np.ptp(corners.reshape(-1, 3), axis=0).max()) if count else 0.0
+    low = np.fmin.reduce(sorted_corners.reshape(leaves, -1, 3), axis=1) - wider
+    high = np.fmax.reduce(sorted_corners.reshape(leaves, -1, 3), axis=1) + wider
     lows, highs = [low], [high]
     while len(lows[0]) > 1:
         lows.insert(0, np.fmin.reduce(lows[0].reshape(-1, 2, 3), axis=1))
@@ -152,8 +153,7 @@ def _meets_box(origin: Floats, inverse: Floats, low: Floats, high: Floats) -> ND
         one, two = (low - origin) * inverse, (high - origin) * inverse
     enter = np.fmax.reduce(np.fmin(one, two), axis=1)
     leave = np.fmin.reduce(np.fmax(one, two), axis=1)
-    slack = EDGE * (np.abs(enter) + np.abs(leave))
-    meets: NDArray[np.bool_] = (enter <= leave + slack) & (leave >= 0.0)  # false in an empty box: NaN
+    meets: NDArray[np.bool_] = (enter <= leave) & (leave >= 0.0)  # false in an empty box: NaN
     return meets
 
 
