@@ -212,3 +212,37 @@ def projected_areas(body: LoadBody, near: Attitudes) -> Floats:
     """Return the projected area at each point [m2]."""
     areas = np.array([body.newtonian(float(x), float(y), 1).projected for x, y in near.nodes])
     return floats((near.weights * areas[near.point]).sum(axis=0))
+
+
+def projected_area(
+    vehicle: Vehicle,
+    angle_of_attack: ArrayLike | None = None,
+    sideslip: ArrayLike | None = None,
+    *,
+    shadow: bool = True,
+    count: int | None = None,
+    elements: Elements | None = None,
+) -> Floats:
+    """Return the area that the flow reaches, projected along it [m2].
+
+    Parameters
+    ----------
+    vehicle : Vehicle
+    angle_of_attack, sideslip : (...,) array or float [rad], optional
+        Default the vehicle's.
+    shadow, count, elements
+        As in `free_molecular_loads`; without shadows elements behind others count too.
+
+    Examples
+    --------
+    >>> from aero.body import Box, Vehicle
+    >>> cube = Vehicle.from_shape(Box(length=1.0, width=1.0, height=1.0))
+    >>> np.round(projected_area(cube, np.radians([0.0, 45.0])), 4)
+    array([1.    , 1.4142])
+    """
+    a = vehicle.angle_of_attack if angle_of_attack is None else angle_of_attack
+    b = vehicle.sideslip if sideslip is None else sideslip
+    angles = np.broadcast_arrays(floats(a), floats(b))
+    body = load_body(vehicle, shadow=shadow, count=count, elements=elements)
+    near = attitudes(angles[0].reshape(-1), angles[1].reshape(-1))
+    return projected_areas(body, near).reshape(angles[0].shape)

@@ -14,7 +14,7 @@ import numpy as np
 from aero.arrays import ArrayLike, Floats, floats
 
 NO_FORCE = 1e-9  # normal over whole force below which a centre of pressure has no place: rounding
-STEP = np.radians(0.5)  # half the step of the central difference: 1e-4 of a sine's slope
+STEP = float(np.radians(0.5))  # half the step of the central difference: 1e-4 of a sine's slope
 
 
 def flow_direction(angle_of_attack: ArrayLike, sideslip: ArrayLike = 0.0) -> Floats:
@@ -168,7 +168,7 @@ class Stability:
 
 
 def stability_derivative(
-    loads_at: Callable[[Floats], Loads], angle_of_attack: ArrayLike, step: float = float(STEP)
+    loads_at: Callable[[Floats], Loads], angle_of_attack: ArrayLike, step: float = STEP
 ) -> Stability:
     """Return the static stability derivative dC_m/da and its kin by central difference.
 
@@ -190,7 +190,11 @@ def stability_derivative(
     (-0.1, -0.05)
     """
     angle = floats(angle_of_attack)
-    above, below = loads_at(angle + step), loads_at(angle - step)
+    return stability(loads_at(angle + step), loads_at(angle - step), step)
+
+
+def stability(above: Loads, below: Loads, step: float) -> Stability:
+    """Return the slopes between loads at angles of attack `step` [rad] above and below a point's."""
     per = 1.0 / (2.0 * step)
     pitch, normal = (above.pitch - below.pitch) * per, (above.normal - below.normal) * per
     acts = np.abs(normal) > NO_FORCE

@@ -16,6 +16,7 @@ from aero.air.state import Air
 from aero.arrays import ArrayLike, Floats, floats
 from aero.body.shadow import flow_share
 from aero.force import newtonian
+from aero.force.coefficients import Coefficients
 from aero.force.elements import SQRT_PI
 from aero.force.load_body import LoadBody, load_body
 from aero.force.load_limits import part_gases
@@ -98,7 +99,7 @@ def sphere_rule(rings: int = RINGS) -> tuple[Floats, Floats, Floats]:
     return a.ravel(), b.ravel(), np.repeat(weights / (4.0 * rings), 2 * rings)
 
 
-def tumbling(
+def tumbling_drag(
     vehicle: Vehicle,
     air: Air,
     flow: Flow,
@@ -135,7 +136,7 @@ def tumbling(
     >>> from aero.gas import flow, mixed_air
     >>> air = mixed_air(900.0, 1e15, [0.3, 0.01, 0.64, 0.01, 0.0, 0.03, 0.01], altitude=250e3)
     >>> cube = Vehicle.from_shape(Box(length=1.0, width=1.0, height=1.0))
-    >>> found = tumbling(cube, air, flow(air, 7500.0), 300.0, 1.0)
+    >>> found = tumbling_drag(cube, air, flow(air, 7500.0), 300.0, 1.0)
     >>> round(found.projected_area, 6)  # a quarter of six square metres
     1.5
     """
@@ -155,6 +156,37 @@ def tumbling(
     windward, lee, seen = (sum(values) for values in zip(*(_newtonian(part) for part in parts), strict=True))
     dense = np.broadcast_to(peak * windward + base * lee, shape) / vehicle.reference_area
     return Tumbling(free.reshape(shape) / vehicle.reference_area, dense, float(seen))
+
+
+def tumbling_coefficients(
+    vehicle: Vehicle,
+    air: Air,
+    flow: Flow,
+    wall_temperature: ArrayLike,
+    accommodation: ArrayLike,
+    *,
+    real_gas: bool = True,
+) -> tuple[Coefficients, Coefficients]:
+    """Return the tumbling averages as the free-molecular and continuum coefficients of a survey.
+
+    Notes
+    -----
+    No lift. The derivatives of drag are central differences over 0.02 of accommodation (one-sided at its
+    ends) and 2 % of wall temperature.
+    """
+
+    def drag(wall: ArrayLike, alpha: ArrayLike) -> Tumbling:
+        return tumbling_drag(vehicle, air, flow, wall, alpha, real_gas=real_gas)
+
+    wall, alpha = floats(wall_temperature), floats(accommodation)
+    here = drag(wall, alpha)
+    more, less = np.minimum(alpha + 0.01, 1.0), np.maximum(alpha - 0.01, 0.0)
+    by_alpha = (drag(wall, more).free_molecular - drag(wall, less).free_molecular) / (more - less)
+    warm, cold = 1.01 * wall, 0.99 * wall
+    by_wall = (drag(warm, alpha).free_molecular - drag(cold, alpha).free_molecular) / (warm - cold)
+    none = 0.0 * here.free_molecular
+    free = Coefficients(here.free_molecular, none, by_alpha, by_wall)
+    return free, Coefficients(here.continuum, 0.0 * here.continuum)
 
 
 @lru_cache(maxsize=8)
