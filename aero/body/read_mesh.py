@@ -155,7 +155,8 @@ def _binary_stl(head: bytes, size: int) -> bool:
 
 def _stated_count(head: bytes, ending: str, size: int) -> int:
     if ending == "stl" and len(head) >= 84 and _binary_stl(head, size):
-        return int.from_bytes(head[80:84], "little")
+        count = int.from_bytes(head[80:84], "little")
+        return count if size > 25 * count else 0  # a file far shorter than that is none
     found = re.search(rb"element\s+face\s+(\d+)", head) if ending == "ply" else None
     return int(found.group(1)) if found else 0
 

@@ -17,7 +17,12 @@ FAR_OFF = 10.0  # reference length over longest side, either way: the unit is wr
 
 
 def read_shape(
-    top: Table, folder: Path, *, shadows: bool = True, reference_length: float | None = None
+    top: Table,
+    folder: Path,
+    *,
+    shadows: bool = True,
+    reference_length: float | None = None,
+    required: bool = False,
 ) -> tuple[Shape | None, bytes]:
     """Return the shape of a [shape] table, None without one, and the bytes of its mesh file.
 
@@ -31,8 +36,10 @@ def read_shape(
         Of a mesh.
     reference_length : float, optional [m]
         That a mesh's size is held against.
+    required : bool, optional
+        Whether there must be a table.
     """
-    table = top.table("shape")
+    table = top.table("shape", required=required)
     if table is None:
         return None, b""
     kind = table.choice("kind", SHAPES, required=True)
@@ -147,9 +154,8 @@ def read_parts(
         if name in names:
             table.fail("name", f"is '{name}', which is taken", "choose another name")
         names.append(name)
-        shape, more = read_shape(table, folder, shadows=shadows)
-        if shape is None:
-            table.fail("shape", "is missing", "add a table [part.shape]")
+        shape, more = read_shape(table, folder, shadows=shadows, required=True)
+        assert shape is not None
         raw += more
         place: dict[str, Any] = {"position": table.point("position", "length") or (0.0, 0.0, 0.0)}
         place |= _turn(table)
