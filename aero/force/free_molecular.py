@@ -70,9 +70,10 @@ def free_molecular(
     translational energy of the molecules of that species that strike the body. Elements behind others of a
     mesh or of parts get no flow; no second reflection, Maxwell's diffuse fraction. The tables are good to
     1e-6 for speed ratios of 0.01 to 100; below 0.0009 the limit C proportional to 1/S is used. Over a
-    changing angle of attack the tables of bodies of revolution are good to 1e-6 up to a speed ratio of 15, 2e-5 above (flow along the cone's side);
-    those of a mesh with large flat faces to 3e-6 up to 15, 2e-5 at 30, 4e-4 at 100. Shadows in a mesh or
-    between parts are drawn on pixels, about half a pixel of 1/512 of the silhouette off at their outlines.
+    changing angle of attack the tables of bodies of revolution are good to 1e-6 up to a speed ratio of 15,
+    2e-5 above (flow along the cone's side); those of a mesh with large flat faces to 3e-6 up to 15, 2e-5 at
+    30, 4e-4 at 100. Shadows in a mesh or between parts are drawn on pixels, about half a pixel of 1/512 of
+    the silhouette off at their outlines.
 
     References
     ----------
