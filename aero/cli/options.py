@@ -20,7 +20,7 @@ ATMOSPHERE_NAMES = ("standard-1976", "nrlmsise-00", "msis-2.1")
 PLACED = ("nrlmsise-00", "msis-2.1")
 ACTIVITY_NAMES = ("low", "moderate", "high", "observed")
 FREE_PATH_NAMES = ("hard-sphere", "vhs", "viscosity")
-CONVECTIVE_NAMES = ("sutton-graves", "detra-kemp-riddell", "brandis-johnston")
+CONVECTIVE_NAMES = ("sutton-graves", "detra-kemp-riddell", "brandis-johnston", "fay-riddell")
 
 
 class Quantity(click.ParamType[float]):

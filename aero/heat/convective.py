@@ -76,6 +76,12 @@ def _brandis_johnston(density: Floats, speed: Floats, nose_radius: Floats) -> Fl
     return np.where(outside, np.nan, np.where(speed == 0.0, 0.0, flux))
 
 
+def _fay_riddell(density: Floats, speed: Floats, nose_radius: Floats) -> Floats:
+    from aero.heat.fay_riddell import fay_riddell_cold  # its table is made at first use
+
+    return fay_riddell_cold(density, speed, nose_radius)
+
+
 CONVECTIVE: dict[str, Correlation] = {
     "sutton-graves": Correlation(
         _sutton_graves,
@@ -103,6 +109,15 @@ CONVECTIVE: dict[str, Correlation] = {
         0.0,
         True,
         "Brandis & Johnston 2014, AIAA 2014-2374",
+    ),
+    "fay-riddell": Correlation(
+        _fay_riddell,
+        (1500.0, 9000.0),  # table from 1.5 km/s; above 9 km/s ionised air (judgement)
+        (1e-7, 1e-1),
+        0.50,
+        300.0,
+        False,
+        "Fay & Riddell 1958, J. Aeronautical Sciences 25, edge in equilibrium",
     ),
 }
 """Convective correlations by name; the first is the default."""

@@ -78,6 +78,52 @@ def energy_fluxes(air: Air, flow: Flow) -> tuple[Floats, Floats]:
     return incident, emitted
 
 
+def element_energy_fluxes(air: Air, flow: Flow, cosine: ArrayLike) -> tuple[Floats, Floats]:
+    """Return what the oncoming molecules bring to inclined elements, and what they carry off.
+
+    Parameters
+    ----------
+    air, flow : Air, Flow
+        Air of shape (...,) and its motion past the body.
+    cosine : (n,) array_like
+        Between each element's outward normal and the direction the flow comes from.
+
+    Returns
+    -------
+    incident : (..., n) array [W/m2]
+    emitted_per_kelvin : (..., n) array [W/(m2 K)]
+
+    Notes
+    -----
+    As `energy_fluxes`, with s_n = s cosine in chi and in the exponential and s itself in the energy a
+    molecule carries: N k T (s^2 + 5/2 + j) - n c k T exp(-s_n^2)/(4 sqrt(pi)) [Bird1994].
+
+    Examples
+    --------
+    >>> from aero.gas import flow, sea_level_air
+    >>> air = sea_level_air()
+    >>> incident, _ = element_energy_fluxes(air, flow(air, 7500.0), [1.0, 0.5, -1.0])
+    >>> (incident / (0.5 * air.density * 7500.0**3)).round(3).tolist()
+    [1.01, 0.505, 0.0]
+    """
+    towards = floats(cosine)
+    kt = (BOLTZMANN * air.temperature)[..., None]
+    incident = np.zeros(np.broadcast_shapes(kt.shape, towards.shape))
+    emitted = np.zeros_like(incident)
+    for index, rotation in enumerate(_ROTATION):
+        number = air.species[..., index, None]
+        if not (number > 0.0).any():
+            continue
+        ratio = flow.speed_ratio_species[..., index, None]
+        normal = ratio * towards
+        half = 0.5 * number * _SPEED_PER_SQRT_KT[index] * np.sqrt(kt)
+        bell = np.exp(-normal * normal) / _SQRT_PI
+        striking = half * (bell + normal * erfc(-normal))
+        incident += kt * (striking * (ratio * ratio + 2.5 + rotation) - 0.5 * half * bell)
+        emitted += BOLTZMANN * (2.0 + rotation) * striking
+    return incident, emitted
+
+
 def free_molecular_flux(
     air: Air,
     flow: Flow,

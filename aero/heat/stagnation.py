@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING
 
 import numpy as np
@@ -10,6 +10,7 @@ import numpy as np
 from aero.air.state import Air
 from aero.arrays import ArrayLike, Floats, floats
 from aero.heat.convective import correlation_named, enthalpy_and_slope, reference_enthalpy
+from aero.heat.effective_radius import heating_radius
 from aero.heat.free_molecular import energy_fluxes
 from aero.heat.radiative import radiative_flux, radiative_validity
 from aero.heat.wall import radiative_wall
@@ -19,7 +20,9 @@ if TYPE_CHECKING:
     from aero.gas import Flow
 
 
-_LINE = 0.57 / 0.763  # heating of a cylinder's stagnation line over a sphere's point [FayRiddell1958]
+LINE_OVER_POINT = (
+    0.57 / 0.763
+)  # heating of a cylinder's stagnation line over a sphere's point [FayRiddell1958]
 
 
 @dataclass(frozen=True, eq=False)
@@ -145,6 +148,7 @@ def stagnation(
     *,
     correlation: str = "sutton-graves",
     exponent: float = 2.0,
+    catalysis: bool = False,
 ) -> Stagnation | None:
     """Return the heating of a vehicle's stagnation point, or None when it has no nose radius.
 
@@ -162,6 +166,10 @@ def stagnation(
         Key of `aero.heat.CONVECTIVE`.
     exponent : float, optional
         p of the blend between the limits.
+    catalysis : bool, optional
+        Count the surface's own catalysis: less than full in the continuum, and the heat of oxygen recombining
+        in free-molecular flow. Off, the wall is fully catalytic in the continuum and takes no such heat
+        beyond.
 
     Returns
     -------
@@ -179,16 +187,15 @@ def stagnation(
     A cylinder's stagnation line receives 0.57/0.763 of the continuum flux of a sphere's point of the same
     radius [FayRiddell1958].
     """
-    radius = vehicle.nose_radius
-    if radius is None:
+    effective = heating_radius(vehicle)
+    if effective is None:
         return None
-    limits = _Limits.of(vehicle, radius, air, flow, accommodation, correlation, exponent)
-    if isinstance(wall, str):
-        if wall != "radiative":
-            raise ValueError(f"wall is '{wall}', expected a temperature in kelvin or 'radiative'")
-        temperature = radiative_wall(limits.total_and_slope, vehicle.surface.emissivity)
-    else:
-        temperature = np.broadcast_to(floats(wall), flow.speed.shape)
+    radius = effective.radius
+    limits = Limits.of(vehicle, radius, air, flow, accommodation, correlation, exponent)
+    temperature = _wall(limits, vehicle, wall, flow.speed.shape)
+    if catalysis:
+        limits = _with_catalysis(limits, vehicle, air, flow, temperature)
+        temperature = _wall(limits, vehicle, wall, flow.speed.shape)
     continuum, free, weight, bridged, slope = limits.at(temperature)
     total = bridged + limits.radiative
     with np.errstate(divide="ignore", invalid="ignore"):
@@ -209,8 +216,32 @@ def stagnation(
     )
 
 
+def _wall(limits: Limits, vehicle: Vehicle, wall: ArrayLike | str, shape: tuple[int, ...]) -> Floats:
+    if not isinstance(wall, str):
+        return np.broadcast_to(floats(wall), shape)
+    if wall != "radiative":
+        raise ValueError(f"wall is '{wall}', expected a temperature in kelvin or 'radiative'")
+    return radiative_wall(limits.total_and_slope, vehicle.surface.emissivity)
+
+
+def _with_catalysis(limits: Limits, vehicle: Vehicle, air: Air, flow: Flow, wall: Floats) -> Limits:
+    """Return the limits with the surface's catalysis in them, its rate taken at a wall temperature."""
+    from aero.heat.catalysis import catalysis_of  # with a table that is made at first use
+    from aero.heat.fay_riddell import dissociation_share
+    from aero.heat.recombination import recombination_flux
+
+    surface = vehicle.surface
+    share = dissociation_share(air.density, flow.speed)
+    pressure = (
+        air.pressure + air.density * flow.speed * flow.speed
+    )  # C_p,max of 2 less 4 %: enough for a rate
+    factor = catalysis_of(surface, share, wall, pressure, limits.conductance)
+    heat = np.where(flow.speed == 0.0, 0.0, recombination_flux(air, flow, surface.recombination))
+    return replace(limits, conductance=limits.conductance * factor, incident=limits.incident + heat)
+
+
 @dataclass(frozen=True, eq=False)
-class _Limits:
+class Limits:
     """Both limits as functions of the wall temperature alone, so that its search repeats nothing else."""
 
     conductance: Floats  # continuum flux over (h_0 - h_w)
@@ -230,9 +261,12 @@ class _Limits:
         accommodation: ArrayLike,
         correlation: str,
         exponent: float,
-    ) -> _Limits:
+    ) -> Limits:
+        """Return the limits of a vehicle's stagnation point, as functions of the wall temperature."""
         chosen = correlation_named(correlation)
-        cold = chosen(air.density, flow.speed, radius) * (_LINE if vehicle.body_class == "cylinder" else 1.0)
+        cold = chosen(air.density, flow.speed, radius) * (
+            LINE_OVER_POINT if vehicle.body_class == "cylinder" else 1.0
+        )
         reference = np.minimum(reference_enthalpy(chosen), 0.25 * flow.total_enthalpy)
         share = floats(accommodation) * vehicle.surface.diffuse_fraction
         incident, emitted = energy_fluxes(air, flow)
