@@ -15,7 +15,7 @@ if TYPE_CHECKING:
     from aero.gas import Flow
 
 ELECTRONVOLT = 1.602176634e-19  # J, exact (SI 2019)
-OXYGEN_BOND = 5.117  # eV to split O2 in its ground state [HuberHerzberg1979]: 5.116; value from memory
+OXYGEN_BOND = 5.117  # eV to split O2 at 0 K [HuberHerzberg1979]; value from memory
 ENERGY_PER_ATOM = 0.5 * OXYGEN_BOND * ELECTRONVOLT  # J, half a bond
 _OXYGEN = SPECIES.index("O")
 
