@@ -17,6 +17,7 @@ RESOLUTION = 512  # pixels along the longer side of the silhouette, where none i
 FINEST = 1024
 ROWS = 4_000_000  # rows of pixels drawn at once; long slivers of fine meshes are drawn coarser beyond it
 GRAZING = 0.01  # cosine below which an element lies along the flow
+EDGE_ON = 1e-12  # cosine up to which a triangle counts as turned away: it has no area across the flow
 MARGIN = 2.5  # pixels a grazing element is lifted off its surface before it is looked for
 SAME_DEPTH = 1e-6  # of the body's extent: faces this near are one, as with coordinates in single precision
 
@@ -76,7 +77,7 @@ def visible_fraction(
     """
     normals, vertices, towards = _checked(normals, vertices, direction)
     found = np.zeros(len(normals))
-    facing = np.flatnonzero(normals @ towards > 0.0)
+    facing = np.flatnonzero(normals @ towards > EDGE_ON)
     if facing.size:
         found[facing] = _draw(vertices[facing], normals[facing], towards, resolution)[0]
     return found
@@ -101,7 +102,7 @@ def flow_share(
     normals, vertices, towards = _checked(normals, vertices, direction)
     cosines = normals @ towards
     found = np.ones(len(normals))
-    facing = np.flatnonzero(cosines > 0.0)
+    facing = np.flatnonzero(cosines > EDGE_ON)
     if not facing.size:
         return found
     found[facing], view, buffer = _draw(vertices[facing], normals[facing], towards, resolution)
