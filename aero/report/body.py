@@ -251,7 +251,7 @@ def _arrow(axes: Axes, view: _View, towards: Floats) -> None:
     tail = floats([26.0 + 0.5 * _ARROW, 22.0]) - 0.5 * step
     figure = axes.get_figure(root=True)
     points = Affine2D().scale(1.0 / 72.0) + figure.dpi_scale_trans  # type: ignore[union-attr]
-    place = points + ScaledTranslation(0.0, 1.0, axes.transAxes)  # type: ignore[arg-type]
+    place = points + ScaledTranslation(0.0, 1.0, axes.transAxes)  # type: ignore[arg-type,operator]
     axes.annotate(
         "", xy=tuple(tail + step), xytext=tuple(tail), xycoords=place, textcoords=place,
         annotation_clip=False, gid="flow",
