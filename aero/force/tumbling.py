@@ -43,6 +43,7 @@ if TYPE_CHECKING:
 
 RINGS = 10  # Gauss points over the sphere from pole to pole; twice as many around
 RESOLUTION = 256  # pixels of each direction's shadows
+SMALL = 1e-6  # step in accommodation of its derivative
 CONVEX = 400  # cosines of a convex body in each half
 
 
@@ -171,8 +172,9 @@ def tumbling_coefficients(
 
     Notes
     -----
-    No lift. The derivatives of drag are central differences over 0.02 of accommodation (one-sided at its
-    ends) and 2 % of wall temperature.
+    No lift. The derivatives of drag are central differences: over 2e-6 of accommodation (one-sided at its
+    ends), for near full accommodation the leaving molecules' temperature changes within a hundredth, and over
+    2 % of wall temperature.
     """
 
     def drag(wall: ArrayLike, alpha: ArrayLike) -> Tumbling:
@@ -180,7 +182,7 @@ def tumbling_coefficients(
 
     wall, alpha = floats(wall_temperature), floats(accommodation)
     here = drag(wall, alpha)
-    more, less = np.minimum(alpha + 0.01, 1.0), np.maximum(alpha - 0.01, 0.0)
+    more, less = np.minimum(alpha + SMALL, 1.0), np.maximum(alpha - SMALL, 0.0)
     by_alpha = (drag(wall, more).free_molecular - drag(wall, less).free_molecular) / (more - less)
     warm, cold = 1.01 * wall, 0.99 * wall
     by_wall = (drag(warm, alpha).free_molecular - drag(cold, alpha).free_molecular) / (warm - cold)
