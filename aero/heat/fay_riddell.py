@@ -164,7 +164,7 @@ def fay_riddell_cold(density: Floats, speed: Floats, nose_radius: Floats) -> Flo
     The table holds q sqrt(R_n)/(sqrt(rho) V^3) of `fay_riddell` with a free stream of 230 K, made at first
     use in a tenth of a second. Against the formula itself it errs by less than 0.05 % between its nodes, and
     by 2.5 % at 2 km/s, 0.6 % at 4 km/s, less beyond, where the air has 190 or 270 K instead; scaling to a hot
-    wall by enthalpy leaves out (rho_w mu_w)^0.1, 3 % at 800 K and 5 % at 1500 K. Outside 1.5 to 13 km/s and
+    wall by enthalpy leaves out (rho_w mu_w)^0.1, 3 % at 800 K and 6 % at 1500 K. Outside 1.5 to 13 km/s and
     1e-7 to 0.1 kg/m3 the table's edge is continued as sqrt(rho) V^3.
 
     Examples
