@@ -116,6 +116,17 @@ def canonical(unit: str) -> str:
     return _RESPELL.get(text, text)
 
 
+def article(dimension: str) -> str:
+    """Return a dimension with its article.
+
+    Examples
+    --------
+    >>> article("angle"), article("length")
+    ('an angle', 'a length')
+    """
+    return f"{'an' if dimension[0] in 'aeiou' else 'a'} {dimension}"
+
+
 def factor(unit: str, dimension: str) -> tuple[float, float] | None:
     """Return (factor, offset) of a unit in a dimension, or None when it is not one of its units."""
     return UNITS[dimension].get(canonical(unit))
@@ -192,7 +203,7 @@ m, km, cm, mm, um, ft, kft, in, mi, nmi.
         example = f"{number} {next(iter(UNITS[dimension]))}"
         raise InputError(
             f"{'holds ' if column else ''}'{shown}'{', which' if column else ''} has no unit, "
-            f"expected a {dimension} such as '{example}'",
+            f"expected {article(dimension)} such as '{example}'",
             source=source,
             column=column,
             remedy=use,
@@ -207,7 +218,11 @@ m, km, cm, mm, um, ft, kft, in, mi, nmi.
         )
     value = found[0] * (float(number) + found[1])
     if not math.isfinite(value):
-        raise InputError(f"'{shown}' is not a finite {dimension}", source=source, column=column)
+        raise InputError(
+            f"{'holds ' if column else ''}'{shown}', expected a finite {dimension}",
+            source=source,
+            column=column,
+        )
     return value
 
 
@@ -274,8 +289,9 @@ def utc(text: object, *, source: str | None = None, line: int | None = None) -> 
     """
     shown = str(text).strip()
     match = _UTC.fullmatch(shown)
+    zone = " (it states another time zone)" if re.search(r"T.*[+-]\d{2}:?\d{2}$", shown) else ""
     error = InputError(
-        f"'{shown}' is not a UTC date, expected ISO 8601 such as '2026-03-01T12:00:00Z'",
+        f"'{shown}' is not a UTC date{zone}, expected ISO 8601 such as '2026-03-01T12:00:00Z'",
         source=source,
         line=line,
     )

@@ -8,7 +8,7 @@ from collections.abc import Iterable
 from typing import Any, NoReturn
 
 from aero.errors import InputError, nearest
-from aero.units import quantity, split_header, to_si
+from aero.units import article, quantity, split_header, to_si
 
 Vector = tuple[float, float, float]
 
@@ -178,16 +178,17 @@ class Table:
 
     def _in_si(self, actual: str, key: str, found: Any, dimension: str, words: tuple[str, ...]) -> float:
         if isinstance(found, bool) or not isinstance(found, (str, int, float)):
-            self.fail(actual, f"holds '{found}', expected a {dimension} as text such as in the guide")
+            self.fail(actual, f"holds '{found}', expected {article(dimension)} as text such as in the guide")
         try:
             if actual != key and not isinstance(found, str):
                 unit = split_header(actual).unit or ""
                 value = to_si(float(found), unit, dimension)
             else:
-                value = quantity(found, dimension)
+                value = quantity(found, dimension, column=key)
         except InputError as error:
             also = f", or write {' or '.join(repr(word) for word in words)}" if words else ""
-            self.fail(actual, f"holds {error.problem}", f"{error.remedy}{also}" if error.remedy else None)
+            problem = error.problem if error.problem.startswith("holds") else f"holds {error.problem}"
+            self.fail(actual, problem, f"{error.remedy}{also}" if error.remedy else None)
         if not math.isfinite(value):
             self.fail(actual, f"holds '{found}', expected a finite {dimension}")
         return value

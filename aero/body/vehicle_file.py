@@ -81,8 +81,10 @@ def _load(path: Path, source: str) -> tuple[bytes, dict[str, Any]]:
     except UnicodeDecodeError:
         raise InputError("is not UTF-8 text, expected TOML", source=source) from None
     except tomllib.TOMLDecodeError as error:
+        table = path.suffix.lower() in (".csv", ".tsv", ".parquet")
         raise InputError(
-            f"is not valid TOML: {error}",
+            f"is not valid TOML{' but looks like a trajectory: is it in the place of the vehicle?' if table else ''}: "
+            f"{error}",
             source=source,
             remedy='values with a unit are text in quotes, such as mass = "38 kg"',
         ) from None

@@ -2,8 +2,10 @@
 
 from __future__ import annotations
 
+import contextlib
 import importlib
 import os
+import signal
 import sys
 
 import click
@@ -70,30 +72,55 @@ def group() -> None:
 
 def main() -> None:
     """Run the command line: exit 0 done, 2 bad input, 1 a fault of ours."""
+    for name in ("SIGTERM", "SIGHUP"):
+        if hasattr(signal, name):
+            # end like an interrupt at the keyboard, so that nothing half-written stays
+            signal.signal(getattr(signal, name), lambda number, _frame: sys.exit(128 + number))
     try:
-        group.main(standalone_mode=False, prog_name="aero")
+        # not click's own main(): it would answer a closed pipe before we can
+        with group.make_context("aero", sys.argv[1:]) as context:
+            group.invoke(context)
         sys.stdout.flush()
     except click.exceptions.Exit as stop:
         sys.exit(stop.exit_code)
+    except click.exceptions.NoArgsIsHelpError as error:
+        click.echo(error.format_message())
     except click.ClickException as error:
-        error.show(sys.stderr)
-        sys.exit(2)
+        sys.exit(_bad_input(_usage(error)))
     except InputError as error:
-        click.echo(f"aero: {error}", err=True)
-        sys.exit(2)
+        sys.exit(_bad_input(str(error)))
     except (click.Abort, KeyboardInterrupt):
-        click.echo("aero: stopped; nothing was written.", err=True)
+        _tell("stopped; nothing was written.")
         sys.exit(130)
     except BrokenPipeError:
         # The reader of a pipe has gone (`| head`): not an error; keep Python from complaining at exit.
         os.dup2(os.open(os.devnull, os.O_WRONLY), sys.stdout.fileno())
         sys.exit(0)
+    except OSError as error:
+        place = f"{error.filename}: " if error.filename else ""
+        sys.exit(_bad_input(f"{place}{error.strerror or error}."))
     except Exception as error:
         if os.environ.get("AERO_TRACEBACK"):
             raise
-        click.echo(
-            f"aero: a fault of ours, not of your input: {type(error).__name__}: {error}\n"
-            "Nothing was written. Run again with AERO_TRACEBACK=1 in the environment and report what it prints.",
-            err=True,
+        _tell(
+            f"a fault of ours, not of your input: {type(error).__name__}: {error}\n"
+            "Run again with AERO_TRACEBACK=1 in the environment and report what it prints."
         )
         sys.exit(1)
+
+
+def _usage(error: click.ClickException) -> str:
+    """Return what is wrong with a call, and where its help is."""
+    text = error.format_message().rstrip(".")
+    context = getattr(error, "ctx", None)
+    return f"{text}; see {context.command_path if context else 'aero'} --help."
+
+
+def _bad_input(text: str) -> int:
+    _tell(text)
+    return 2
+
+
+def _tell(text: str) -> None:
+    with contextlib.suppress(OSError):
+        click.echo(f"aero: {text}", err=True)

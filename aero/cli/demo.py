@@ -23,7 +23,9 @@ def command(**options: Any) -> None:
     """Survey the shipped example: the invented capsule Marram on a steep return."""
     from aero.cli import survey
     from aero.examples_path import example
+    from aero.survey.write import check_out
 
+    check_out(options["out"], replace=options["replace"])
     say(f"The shipped example, all invented: {VEHICLE} on {TRAJECTORY}.", style=options["style"])
     survey.run(
         trajectory=str(example(TRAJECTORY)),

@@ -62,12 +62,15 @@ if TYPE_CHECKING:
     "--step", type=shared.Quantity("time", "1s"), help="Time between samples. Default: up to 1000 rows."
 )
 @click.option(
-    "--out", type=click.Path(), metavar="FILE.csv", help="Trajectory file to write, which survey reads."
+    "--out",
+    type=click.Path(),
+    metavar="FILE.csv",
+    help="Trajectory file to write (.csv, .tsv, .parquet), which survey reads.",
 )
 @shared.replace_option
 @shared.place_options
 @shared.atmosphere_options
-@shared.model_options
+@shared.body_options
 @shared.format_option("table", "json", "csv")
 def command(**options: Any) -> None:
     """Fly an entry in three degrees of freedom, to the ground or out of the atmosphere again."""

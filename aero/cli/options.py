@@ -76,9 +76,10 @@ class Bounds(click.ParamType[tuple[float, float, float]]):
 
         try:
             return check_bounds([float(part) for part in str(value).split(",")])
-        except ValueError as error:
-            shown = str(error) if isinstance(error, InputError) else f"'{value}' are not three numbers"
-            self.fail(f"{shown.rstrip('.')}; write them as 0.01,0.1,10", param, ctx)
+        except InputError as error:
+            self.fail(str(error).rstrip("."), param, ctx)
+        except ValueError:
+            self.fail(f"'{value}' are not three numbers; write them as 0.01,0.1,10", param, ctx)
 
 
 class Wall(click.ParamType[float | str]):
@@ -160,14 +161,7 @@ free_path_option = click.option(
     show_default=True,
     help="Definition of the mean free path shown and used for the tags.",
 )
-model_options = together(
-    free_path_option,
-    click.option(
-        "--bounds",
-        type=Bounds(),
-        default=(0.01, 0.1, 10.0),
-        help="Regime bounds in Knudsen number. [0.01,0.1,10]",
-    ),
+body_options = together(
     click.option("--wall-temperature", "wall", type=Wall(), help="Replaces the vehicle's own."),
     click.option(
         "--perfect-gas", is_flag=True, help="Stagnation pressure of a perfect gas in the continuum limit."
@@ -180,6 +174,16 @@ model_options = together(
         help=f"Continuum stagnation heating: {', '.join(CONVECTIVE_NAMES)}.",
     ),
 )
+model_options = together(
+    free_path_option,
+    click.option(
+        "--bounds",
+        type=Bounds(),
+        default=(0.01, 0.1, 10.0),
+        help="Regime bounds in Knudsen number. [0.01,0.1,10]",
+    ),
+    body_options,
+)
 replace_option = click.option("--replace", is_flag=True, help="Replace an existing output.")
 
 
@@ -188,8 +192,8 @@ def settings_from(**options: Any) -> Settings:
     from aero.survey.settings import Settings
 
     return Settings(
-        bounds=options["bounds"],
-        free_path=options["free_path"],
+        bounds=options.get("bounds", Settings.bounds),
+        free_path=options.get("free_path", Settings.free_path),
         wall=options["wall"],
         convective=options["convective"],
         real_gas=not options["perfect_gas"],

@@ -55,6 +55,9 @@ def command(**options: Any) -> None:
     from aero.survey.one_point import point
 
     vehicle = _vehicle(options)
+    if vehicle is None and (options["angle_of_attack"] is not None or options["perfect_gas"]):
+        idle = "--angle-of-attack" if options["angle_of_attack"] is not None else "--perfect-gas"
+        raise InputError("acts on a body, and none is given", source=idle, remedy="add --vehicle or --shape")
     lengths = _lengths(options["lengths"], vehicle)
     if vehicle is None and not lengths:
         raise InputError(

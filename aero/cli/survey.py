@@ -52,9 +52,9 @@ def command(**options: Any) -> None:
 
 def run(**options: Any) -> None:
     """Do what `aero survey` and `aero demo` share."""
-    from aero.survey.output import check_target
+    from aero.survey.write import check_out
 
-    check_target(options["out"], replace=options["replace"], folder=True)
+    check_out(options["out"], replace=options["replace"])
     tables = _tables(options["tables"])
 
     from aero.body import read_vehicle
@@ -100,7 +100,7 @@ def _tables(text: str) -> tuple[str, ...]:
     names = tuple(part.strip() for part in text.split(","))
     if names not in {("csv", "parquet"), ("parquet", "csv"), ("parquet",), ("csv",)}:
         raise InputError(
-            f"'{text}' is not a choice of tables", source="--tables", remedy="use csv,parquet or parquet"
+            f"'{text}' is not a choice of tables", source="--tables", remedy="use csv,parquet, csv or parquet"
         )
     return names
 
@@ -145,7 +145,7 @@ def report(result: Any, files: list[str], why: str, options: dict[str, Any]) -> 
     elif style == "csv":
         print_csv(list(result.segments.columns), result.segments.to_numpy().tolist())
     else:
-        from aero.cli.text import crossings_text, segments_text
+        from aero.cli.text import crossings_text, reasons_text, segments_text
 
         show("")
         say(result.summary)
@@ -154,6 +154,8 @@ def report(result: Any, files: list[str], why: str, options: dict[str, Any]) -> 
             show(crossings_text(result.crossings))
             show("")
             show(segments_text(result.segments))
+            show("")
+            show(reasons_text(result.segments))
             show("")
     for note in result.notes:
         say(f"note: {note}", style=style)

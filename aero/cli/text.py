@@ -3,9 +3,11 @@
 from __future__ import annotations
 
 import sys
+import textwrap
 from collections.abc import Mapping, Sequence
 from typing import Any
 
+from aero.cli.show import WIDTH
 from aero.report import SEGMENT_COLUMNS, facts_text, table_text
 
 CROSSING_COLUMNS = (
@@ -74,6 +76,16 @@ def segments_text(segments: Any) -> str:
     return table_text(segments, columns=SEGMENT_COLUMNS, keys=2, title="Segments", colour=colour())
 
 
+def reasons_text(segments: Any) -> str:
+    """Return each method's reasons once, in the order they are met."""
+    seen = dict.fromkeys(zip(segments["method"], segments["method_reason"], strict=True))
+    lines = [
+        textwrap.fill(f"{method}: {reason}.", WIDTH, initial_indent="  ", subsequent_indent="    ")
+        for method, reason in seen
+    ]
+    return "\n".join(["Why", *lines])
+
+
 def flight_text(summary: Mapping[str, Any]) -> str:
     """Return a flight's summary as named values."""
     facts = {k: v for k, v in summary.items() if k not in ("final", "notes", "ended_by") and v is not None}
@@ -82,4 +94,4 @@ def flight_text(summary: Mapping[str, Any]) -> str:
     return facts_text({**facts, **final})
 
 
-__all__ = ["air_text", "condition_text", "crossings_text", "flight_text", "segments_text"]
+__all__ = ["air_text", "condition_text", "crossings_text", "flight_text", "reasons_text", "segments_text"]

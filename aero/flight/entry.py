@@ -146,6 +146,12 @@ def fly(
         until=until,
         tolerance=tolerance,
     )
+    if path.duration <= 0.0:
+        raise InputError(
+            "the start already leaves the atmosphere for good, so there is nothing to fly",
+            source="--altitude, --speed, --flight-path-angle",
+            remedy="start lower, slower or steeper down",
+        )
     if path.ended_by == "time limit":
         notes += (f"The flight neither landed nor left within {DAY:g} s, where it was stopped; see --until.",)
     notes += _slow(vehicle, ballistic_coefficient, path, air)

@@ -3,7 +3,7 @@
 from aero.callable_module import make_callable
 from aero.regime.crossings import Crossings, find_crossings
 from aero.regime.method import METHODS, advise
-from aero.regime.segments import Cuts, cut_segments
+from aero.regime.segments import Cuts, cut_segments, extremes
 from aero.regime.tags import DEFAULT_BOUNDS, REGIMES, check_bounds, knudsen, regime, regime_index
 from aero.regime.track import Track
 
@@ -17,6 +17,7 @@ __all__ = [
     "advise",
     "check_bounds",
     "cut_segments",
+    "extremes",
     "find_crossings",
     "knudsen",
     "regime",

@@ -74,21 +74,41 @@ def cut_segments(
         edge = np.asarray(bounds, dtype=np.float64)[crossings.bound[mine]]
         first = np.searchsorted(time, start, side="left")
         last = np.concatenate([np.searchsorted(time, cut_time, side="left"), [time.size]])
-        low, high = _extremes(sampled_path / length, first, last)
         nan = np.array([np.nan])
-        edges = np.stack([low, np.concatenate([nan, edge]), np.concatenate([edge, nan])])
-        low = np.fmin.reduce(edges)
-        high = np.fmax.reduce(np.stack([high, edges[1], edges[2]]))
+        before, after = np.concatenate([nan, edge]), np.concatenate([edge, nan])
+        low, high = _within(sampled_path / length, first, last, before, after)
         parts.append((np.full(start.size, i), regime, start, end, first, last, low, high))
     return Cuts(*(np.concatenate(column) for column in zip(*parts, strict=True)))
 
 
-def _extremes(values: Floats, first: np.ndarray, last: np.ndarray) -> tuple[Floats, Floats]:
-    """Return the smallest and largest value of each run of samples, NaN for an empty run."""
-    filled = first < last
+def extremes(values: Floats, cuts: Cuts, at_start: Floats, at_end: Floats) -> tuple[Floats, Floats]:
+    """Return the smallest and the largest value in each segment, over its samples and its two ends.
+
+    Parameters
+    ----------
+    values : (n,) array
+        At the samples.
+    cuts : Cuts
+    at_start, at_end : (m,) arrays
+        At the ends of each segment.
+    """
+    low, high = np.empty(cuts.start.size), np.empty(cuts.start.size)
+    for length in np.unique(cuts.length):
+        mine = cuts.length == length
+        low[mine], high[mine] = _within(
+            values, cuts.first[mine], cuts.last[mine], at_start[mine], at_end[mine]
+        )
+    return low, high
+
+
+def _within(
+    values: Floats, first: np.ndarray, last: np.ndarray, before: Floats, after: Floats
+) -> tuple[Floats, Floats]:
+    """Return the smallest and largest of each run of samples and of what stands before and after it."""
     low = np.full(first.size, np.nan)
     high = np.full(first.size, np.nan)
+    filled = first < last
     # The runs of the filled segments cover all samples in order, so that reduceat needs their starts only.
     low[filled] = np.fmin.reduceat(values, first[filled])
     high[filled] = np.fmax.reduceat(values, first[filled])
-    return low, high
+    return np.fmin(np.fmin(before, after), low), np.fmax(np.fmax(before, after), high)

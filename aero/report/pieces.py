@@ -14,7 +14,6 @@ from aero.report import palette
 from aero.report.bands import fill
 from aero.report.names import Table, column, has_numbers, row_count, texts
 from aero.report.scales import time_unit
-from aero.report.style import SMALL, text_width
 
 _FINEST = 0.005  # in: one pixel of a PNG; no piece is drawn narrower where many crowd
 NO_TIME = "no time in the trajectory: points drawn one by one"
@@ -83,8 +82,16 @@ def _runs(tags: np.ndarray, along: Along) -> list[Piece]:
     ]
 
 
+def limits_along(along: Along) -> tuple[float, float]:
+    """Return the ends of the axis that strips run along."""
+    good = along.places[np.isfinite(along.places)]
+    low, high = (float(good.min()), float(good.max())) if good.size else (0.0, 1.0)
+    half = 0.0 if along.timed and high > low else 0.5
+    return low - half, high + half
+
+
 def draw_pieces(axes: Axes, pieces: Sequence[Piece], row: float, half: float) -> None:
-    """Draw one strip centred on `row`, and in each piece wide enough its regime and share."""
+    """Draw one strip centred on `row`."""
     left, right = axes.get_xlim()
     figure = axes.get_figure(root=True)
     per_unit = float(axes.bbox.width / figure.dpi / (right - left))  # type: ignore[union-attr]
@@ -97,18 +104,6 @@ def draw_pieces(axes: Axes, pieces: Sequence[Piece], row: float, half: float) ->
             **fill(piece.regime),
         )
         axes.add_patch(patch)
-        text = piece_text(piece, (min(piece.end, right) - max(piece.start, left)) * per_unit - 0.06)
-        if text:
-            axes.text(
-                0.5 * (piece.start + piece.end),
-                row,
-                text,
-                color=palette.REGIME_TEXT[piece.regime],
-                size=SMALL,
-                ha="center",
-                va="center_baseline",
-                gid="share",
-            )
 
 
 def legible(pieces: Sequence[Piece], finest: float) -> list[Piece]:
@@ -145,24 +140,20 @@ def _joined(crowd: Sequence[Piece]) -> list[Piece]:
     return [Piece(longest, crowd[0].start, crowd[-1].end, float("nan"))]
 
 
-def piece_text(piece: Piece, width: float) -> str:
-    """Return the longest of regime with share, share, regime that fits `width` inches; or nothing."""
-    share = f"{percent(piece.share)} %" if np.isfinite(piece.share) else ""
-    for text in (f"{piece.regime} {share}".strip(), share or piece.regime):
-        if text and text_width(text, SMALL) <= width:
-            return text
-    return ""
-
-
 def percent(share: float) -> str:
     """Return a share in per cent, whole from 10 up, with one decimal below, never 0 for a little.
+
+    Less than nothing has a minus sign; so little less that it would read -0.0 is 0.
 
     Examples
     --------
     >>> percent(0.923), percent(0.0312), percent(0.0002), percent(0.0)
     ('92', '3.1', '<0.1', '0')
+    >>> percent(-0.0002), percent(-0.0312), percent(-0.923)
+    ('0', '−3.1', '−92')
     """
     value = 100.0 * share
-    if 0.0 < value < 0.05:
-        return "<0.1"
-    return f"{value:.0f}" if value >= 9.95 or value == 0.0 else f"{value:.1f}"
+    size = abs(value)
+    if size < 0.05:
+        return "<0.1" if value > 0.0 else "0"
+    return ("\N{MINUS SIGN}" if value < 0.0 else "") + (f"{size:.0f}" if size >= 9.95 else f"{size:.1f}")

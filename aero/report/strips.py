@@ -20,11 +20,12 @@ from aero.report.names import (
     shorten,
 )
 from aero.report.numbers import format_number, format_quantity
-from aero.report.pieces import NO_TIME, Along, draw_pieces, pieces_of, run_along
+from aero.report.pieces import NO_TIME, Along, draw_pieces, limits_along, pieces_of, run_along
 from aero.report.scales import linear_axis, round_ticks
+from aero.report.shares import LANE, Layout, draw_notes, lay_out
 from aero.report.style import NORMAL, SMALL, text_width
 
-_ROW, _GAP = 0.27, 0.09  # a strip and the space under it [in]
+_ROW, _GAP = 0.29, 0.09  # a strip and the space around it [in]
 _TOP, _BOTTOM, _RIGHT = 0.7, 0.92, 0.22  # margins [in]
 
 
@@ -68,11 +69,14 @@ def figure_strips(
     along = run_along(points)
     rows = {name: pieces_of(points, segments, name, along) for name in names}
     captions = {name: _caption(name, sizes[name]) for name in names}
-    figure, axes = _canvas(size, ax, list(captions.values()))
-    _axis(axes, along, len(names))
-    for row, name in enumerate(names):
-        draw_pieces(axes, rows[name], row, 0.5 * _ROW / (_ROW + _GAP))
-    axes.set_yticks(range(len(names)), list(captions.values()))
+    frame = _Frame(size, ax, list(captions.values()))
+    notes = [lay_out(rows[name], limits_along(along), frame.wide, frame.row) for name in names]
+    figure, axes, middles, half = frame.axes(notes)
+    linear_axis(axes, "x", limits_along(along), along.label, most=9)
+    for name, middle, layout in zip(names, middles, notes, strict=True):
+        draw_pieces(axes, rows[name], middle, half)
+        draw_notes(axes, layout, middle, half)
+    axes.set_yticks(middles, list(captions.values()))
     altitude_scale(axes, along.places, column(points, "altitude_m"))
     if ax is None:
         shares = any(np.isfinite(piece.share) for pieces in rows.values() for piece in pieces)
@@ -97,32 +101,59 @@ def _caption(name: str, size: float) -> str:
     return shorten(name, 24) + length
 
 
-def _canvas(size: str, ax: Axes | None, captions: Sequence[str]) -> tuple[Figure, Axes]:
-    if ax is not None:
-        figure = ax.get_figure(root=True)
-        if not isinstance(figure, Figure):
-            raise ValueError("ax must stand in a figure")
-        return figure, ax
-    rows = max(len(captions), 1)
-    figure = style.new_figure(size, _TOP + _BOTTOM + rows * (_ROW + _GAP))
-    width, height = (float(edge) for edge in figure.get_size_inches())
-    left = max([0.6, *(text_width(caption, NORMAL) + 0.2 for caption in captions)])
-    bottom = _BOTTOM
-    if size == "slide":  # strips of a few lengths do not fill a slide: keep them together, under the title
-        bottom = max(_BOTTOM, height - _TOP - rows * 2.0 * (_ROW + _GAP))
-    return figure, style.place_axes(figure, left, bottom, width - _RIGHT, height - _TOP)
+class _Frame:
+    """The axes of the strips: their width is known first, their height when the shares have their places."""
 
+    def __init__(self, size: str, ax: Axes | None, captions: Sequence[str]) -> None:
+        self.rows = max(len(captions), 1)
+        self._size, self._ax = size, ax
+        self.row = _ROW
+        if ax is not None:
+            figure = ax.get_figure(root=True)
+            if not isinstance(figure, Figure):
+                raise ValueError("ax must stand in a figure")
+            self.figure = figure
+            self.wide = float(ax.bbox.width / figure.dpi)
+            self._tall = float(ax.bbox.height / figure.dpi)
+        else:
+            self.figure = style.new_figure(size, _TOP + _BOTTOM + self.rows * (_ROW + _GAP))
+            width, height = (float(edge) for edge in self.figure.get_size_inches())
+            self._left = max([0.6, *(text_width(caption, NORMAL) + 0.2 for caption in captions)])
+            self.wide = width - _RIGHT - self._left
+            self._tall = height - _TOP - _BOTTOM
+        if self._fixed:
+            self.row = min(_ROW, self._parts(LANE)[0])
 
-def _axis(axes: Axes, along: Along, rows: int) -> None:
-    good = along.places[np.isfinite(along.places)]
-    low, high = (float(good.min()), float(good.max())) if good.size else (0.0, 1.0)
-    half = 0.0 if along.timed else 0.5
-    if not high > low:
-        half = 0.5
-    linear_axis(axes, "x", (low - half, high + half), along.label, most=9)
-    axes.set_ylim(max(rows, 1) - 0.5, -0.5)
-    style.quiet_axes(axes, keep=("bottom",))
-    axes.tick_params(axis="y", length=0)
+    @property
+    def _fixed(self) -> bool:
+        """Whether the height is given; then rows share it, up to twice as high as in a column."""
+        return self._ax is not None or self._size == "slide"
+
+    def _parts(self, lanes: float) -> tuple[float, float]:
+        """Return the height of a strip and the pitch of the rows, with `lanes` between them [in]."""
+        if not self._fixed:
+            return _ROW, _ROW + _GAP + lanes
+        pitch = min(2.0 * (_ROW + _GAP) + lanes, self._tall / self.rows)
+        return max((pitch - lanes) * _ROW / (_ROW + _GAP), 0.05), pitch
+
+    def axes(self, notes: Sequence[Layout]) -> tuple[Figure, Axes, list[float], float]:
+        """Return figure, axes with a vertical axis in inches from the top, middles of strips, half a strip."""
+        used = {lane for layout in notes for lane, placed in layout.lanes.items() if placed}
+        row, pitch = self._parts(LANE * len(used))
+        axes = self._ax
+        if axes is None:
+            tall = self.rows * pitch
+            if not self._fixed:
+                self.figure.set_size_inches(self.figure.get_size_inches()[0], _TOP + _BOTTOM + tall)
+            width, height = (float(edge) for edge in self.figure.get_size_inches())
+            top = height - _TOP  # strips of a few lengths do not fill a slide: they stand under the title
+            axes = style.place_axes(self.figure, self._left, top - tall, width - _RIGHT, top)
+        axes.set_ylim(self.rows * pitch, 0.0)
+        style.quiet_axes(axes, keep=("bottom",))
+        axes.tick_params(axis="y", length=0)
+        before = LANE * ("above" in used) + 0.5 * max(pitch - LANE * len(used) - row, 0.0)
+        middles = [k * pitch + before + 0.5 * row for k in range(len(notes))]
+        return self.figure, axes, middles, 0.5 * row
 
 
 def altitude_scale(axes: Axes, places: Floats, altitude: Floats) -> None:

@@ -103,6 +103,8 @@ SEGMENT_COLUMNS = (
     "end_s",
     "start_altitude_m",
     "end_altitude_m",
+    "altitude_min_m",
+    "altitude_max_m",
     "duration_s",
     "knudsen_min",
     "knudsen_max",

@@ -17,7 +17,7 @@ from aero.arrays import Floats
 from aero.errors import InputError
 from aero.survey.grid import AXES, Grid
 from aero.survey.notes import grid_notes
-from aero.survey.output import check_target, whole
+from aero.survey.output import check_target, only_ours, whole
 from aero.survey.plain import plain_json
 
 if TYPE_CHECKING:
@@ -84,7 +84,9 @@ def check_out(out: str | Path, *, replace: bool) -> bool:
             source=str(out),
             remedy="end the name in .parquet or .csv, or give a folder",
         )
-    check_target(out, replace=replace, folder=folder, ours=f"{NAME}.json")
+    check_target(out, replace=replace, folder=folder)
+    if folder and replace:
+        only_ours(Path(out), tuple(f"{NAME}.{kind}" for kind in ("parquet", "csv", "json")))
     return folder
 
 

@@ -15,6 +15,8 @@ if TYPE_CHECKING:
     from aero.trajectory import Trajectory
 
 FAST = 9e3  # m/s, where shock-layer radiation begins to matter
+LOW, LOW_SPEED = 20e3, 3e3  # m, m/s: below this altitude and above this speed a unit has likely slipped
+HIGH, HIGH_SPEED = 100e3, 100.0  # m, m/s: above and below which it has
 FASTEST = 16e3  # m/s, end of the radiative correlation
 SLOW_MACH = 2.0  # below it the Newtonian limit is an extrapolation
 ACTIVE_FROM = 120e3  # m, winds and activity matter above it
@@ -100,6 +102,15 @@ def _common(
             "evaluated in the hard-sphere definition they were fitted in, so drag and heating do not move."
         )
     notes += atmosphere.notes(altitude, utc)
+    odd = ((altitude < LOW) & (speed > LOW_SPEED)) | (
+        (altitude > HIGH) & (speed < HIGH_SPEED) & (speed > 0.0)
+    )
+    if np.any(odd):
+        first = int(np.argmax(odd))
+        notes.append(
+            f"{speed[first]:.4g} m/s at {altitude[first] / 1e3:.4g} km is an unusual pair ({int(odd.sum())} of "
+            f"{odd.size} points): check the units of altitude and speed."
+        )
     if atmosphere.needs_place and altitude.size and float(np.max(altitude)) > ACTIVE_FROM:
         notes.append(
             "Winds of 100-200 m/s in the thermosphere are not modelled; they change drag by 2-5 % (judgement)."
@@ -130,6 +141,12 @@ def _vehicle(vehicle: Vehicle, speed: np.ndarray, columns: Mapping[str, np.ndarr
         notes.append(
             "On a blunt capsule the sonic line may sit at the shoulder; its stagnation heating then follows an "
             "effective radius larger than the nose's (Zoby & Sullivan 1966). Give it as [heating] nose_radius."
+        )
+    flux = columns["heat_flux_W_m2"]
+    if np.any(flux < 0.0):
+        notes.append(
+            "Where the wall is hotter than the air brings it to, the flux is negative: the wall loses heat, and "
+            "the heat load sinks."
         )
     if np.any(speed > FASTEST):
         notes.append(

@@ -15,7 +15,7 @@ from aero.arrays import Floats, Times
 from aero.body import Vehicle
 from aero.errors import InputError
 from aero.gas import free_path_uncertainty
-from aero.regime import REGIMES, Crossings, Cuts, Track, cut_segments, find_crossings
+from aero.regime import REGIMES, Crossings, Cuts, Track, cut_segments, extremes, find_crossings
 from aero.regime.track import Cubic, clock
 from aero.survey.chain import conditions
 from aero.survey.columns import CROSSING_COLUMNS, SEGMENT_COLUMNS, free_name, point_columns
@@ -344,14 +344,18 @@ def _segment_table(
 
     method, reason = segment_methods(cuts, list(lengths), columns, time, settings.bounds, between_samples)
     names = list(lengths)
+    first, last = track.altitude(cuts.start), track.altitude(cuts.end)
+    lowest, highest = extremes(trajectory.altitude, cuts, first, last)
     return pd.DataFrame(
         {
             "length": [names[i] for i in cuts.length],
             "regime": [REGIMES[i] for i in cuts.regime],
             "start_s": cuts.start,
             "end_s": cuts.end,
-            "start_altitude_m": track.altitude(cuts.start),
-            "end_altitude_m": track.altitude(cuts.end),
+            "start_altitude_m": first,
+            "end_altitude_m": last,
+            "altitude_min_m": lowest,
+            "altitude_max_m": highest,
             "duration_s": cuts.end - cuts.start,
             "knudsen_min": cuts.knudsen_min,
             "knudsen_max": cuts.knudsen_max,

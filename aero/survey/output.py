@@ -3,12 +3,17 @@
 from __future__ import annotations
 
 import contextlib
+import fnmatch
 import shutil
 import tempfile
-from collections.abc import Iterator
+from collections.abc import Collection, Iterator
 from pathlib import Path
+from typing import IO
 
 from aero.errors import InputError
+
+PREFIX = ".aero-"  # of the working folder beside a target
+LOCK = "lock"
 
 
 @contextlib.contextmanager
@@ -35,17 +40,21 @@ def whole(target: str | Path, *, replace: bool, folder: bool) -> Iterator[Path]:
     missing = [p for p in (parent, *parent.parents) if not p.exists()]
     try:
         parent.mkdir(parents=True, exist_ok=True)
-        work = Path(tempfile.mkdtemp(prefix=".aero-", dir=parent))
+        sweep(parent)
+        work = Path(tempfile.mkdtemp(prefix=PREFIX, dir=parent))
     except OSError as error:
         raise InputError(f"cannot write there ({error.strerror})", source=str(target)) from None
     try:
-        new = work / "new"
-        if folder:
-            new.mkdir()
-        yield new
-        if path.exists():
-            path.rename(work / "old")
-        new.rename(path)
+        with held(work):
+            new = work / "new"
+            if folder:
+                new.mkdir()
+            yield new
+            if path.exists():
+                # it may have appeared meanwhile: another run is not overwritten without being asked
+                _check(path, replace=replace, folder=folder)
+                path.rename(work / "old")
+            new.rename(path)
     except OSError as error:
         if not path.exists() and (work / "old").exists():
             (work / "old").rename(path)
@@ -56,6 +65,32 @@ def whole(target: str | Path, *, replace: bool, folder: bool) -> Iterator[Path]:
             for made in missing:
                 with contextlib.suppress(OSError):
                     made.rmdir()
+
+
+@contextlib.contextmanager
+def held(work: Path) -> Iterator[None]:
+    """Hold a lock in a working folder for as long as its process lives, so that `sweep` leaves it alone."""
+    with (work / LOCK).open("w") as file:
+        with contextlib.suppress(OSError):
+            _lock(file)
+        yield
+
+
+def sweep(parent: Path) -> None:
+    """Remove working folders that a killed run left behind: those whose lock nobody holds."""
+    for work in parent.glob(f"{PREFIX}*"):
+        with contextlib.suppress(OSError), (work / LOCK).open("r+") as file:
+            _lock(file)
+            shutil.rmtree(work, ignore_errors=True)
+
+
+def _lock(file: IO[str]) -> None:
+    """Lock a file, or raise OSError where another process holds it or the system has no such locks."""
+    try:
+        import fcntl
+    except ImportError:
+        raise OSError("no file locks on this system") from None
+    fcntl.flock(file, fcntl.LOCK_EX | fcntl.LOCK_NB)
 
 
 def _check(path: Path, *, replace: bool, folder: bool) -> None:
@@ -73,17 +108,29 @@ def _check(path: Path, *, replace: bool, folder: bool) -> None:
         raise InputError("exists", source=str(path), remedy="choose another name or pass --replace")
 
 
-def check_target(target: str | Path, *, replace: bool, folder: bool, ours: str = "survey.json") -> None:
-    """Raise early what `whole` would raise about an existing target, before any long work.
+def check_target(target: str | Path, *, replace: bool, folder: bool) -> None:
+    """Raise early what `whole` would raise about an existing target, before any long work."""
+    if not str(target).strip():
+        raise InputError("is empty, expected the name of what to write", source="--out")
+    _check(Path(target), replace=replace, folder=folder)
 
-    With `replace`, a folder is replaced only when it holds an earlier output of ours (or nothing), known by the
-    file `ours` in it, so that a mistyped name cannot wipe somebody's files.
+
+def only_ours(path: Path, ours: Collection[str]) -> None:
+    """Raise an InputError where a folder that is to be replaced holds a file we do not write.
+
+    Parameters
+    ----------
+    path : Path
+    ours : collection of str
+        Patterns of our own files, relative to the folder.
     """
-    path = Path(target)
-    _check(path, replace=replace, folder=folder)
-    if folder and replace and path.is_dir() and any(path.iterdir()) and not (path / ours).is_file():
-        raise InputError(
-            f"is a folder that holds no {ours.partition('.')[0]}, so it is not replaced",
-            source=str(path),
-            remedy="choose another name",
-        )
+    if not path.is_dir():
+        return
+    for file in sorted(path.rglob("*")):
+        name = file.relative_to(path).as_posix()
+        if not file.is_dir() and not any(fnmatch.fnmatchcase(name, pattern) for pattern in ours):
+            raise InputError(
+                f"holds '{name}', which is no part of such an output, so the folder is not replaced",
+                source=str(path),
+                remedy="move that file away or choose another name",
+            )

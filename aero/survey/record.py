@@ -88,7 +88,7 @@ def digest(record: Mapping[str, Any]) -> str:
     """Return a short hash of everything that decides a survey's numbers."""
     deciding = {k: record[k] for k in ("inputs", "atmosphere", "options", "versions")}
     text = json.dumps(plain_json(deciding), sort_keys=True)
-    return hashlib.sha256(text.encode()).hexdigest()[:10]
+    return hashlib.sha256(text.encode()).hexdigest()[:8]
 
 
 def _rows(table: Any) -> list[dict[str, Any]]:

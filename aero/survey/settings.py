@@ -44,5 +44,8 @@ class Settings:
             choose(self.convective, CONVECTIVE, "convective heating")
         if isinstance(self.wall, str):
             choose(self.wall, ["radiative"], "wall temperature")
-        elif self.wall is not None and not 1.0 <= self.wall <= 5000.0:
-            raise InputError(f"wall temperature is {self.wall:g} K, expected 1 K to 5000 K")
+        elif self.wall is not None and not 1.0 <= self.wall <= 10e3:
+            raise InputError(
+                f"wall temperature is {self.wall:g} K, expected 1 K to 10000 K",
+                source="--wall-temperature",
+            )

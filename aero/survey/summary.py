@@ -10,6 +10,7 @@ import pandas as pd
 from aero.body import Vehicle
 from aero.regime import REGIMES
 
+TURN = 1.0  # km by which a turning point must differ from both ends to be named
 MOST_LISTED = 6  # crossings named one by one; more are counted
 
 
@@ -33,7 +34,8 @@ def summary_sentence(
     if segments.empty:
         return _without_time(name, lengths["reference"], points)
     parts = [f"{name} ({_length(lengths['reference'])}) {_course(segments, crossings)}"]
-    heat = _falls(segments, "heat_load_share", "of the heat load falls")
+    parts += _turns(points)
+    heat = _falls(segments, "heat_load_share", "of the heat load falls") if _heats(segments) else ""
     if heat:
         parts.append(heat)
     smallest = min(lengths, key=lambda n: lengths[n])
@@ -75,6 +77,23 @@ def _course(segments: pd.DataFrame, crossings: pd.DataFrame) -> str:
         return f"leaves continuum flow at {altitudes[0]} and is in free-molecular flow above {altitudes[-1]}"
     steps = ", ".join(f"{_flow(r)} at {a}" for r, a in zip(regimes[1:], altitudes, strict=True))
     return f"starts in {_flow(regimes[0])} and passes into {steps}"
+
+
+def _turns(points: pd.DataFrame) -> list[str]:
+    """Name the lowest and the highest point where the flight turns there, and is not at an end of it."""
+    altitude = points["altitude_m"].to_numpy() / 1e3
+    found = []
+    for word, at in (("lowest", int(altitude.argmin())), ("highest", int(altitude.argmax()))):
+        ends = abs(altitude[[0, -1]] - altitude[at])
+        if ends.min() > TURN:
+            found.append(f"{word} at {altitude[at]:.1f} km")
+    return [" and ".join(found)] if found else []
+
+
+def _heats(segments: pd.DataFrame) -> bool:
+    """Whether the flight heats the wall at all: a load below zero is cooling and has no shares to speak of."""
+    mine = segments[segments["length"] == "reference"]
+    return bool(mine["heat_load_J_m2"].sum() > 0.0)
 
 
 def _falls(segments: pd.DataFrame, column: str, words: str) -> str:

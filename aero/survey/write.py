@@ -8,7 +8,7 @@ from collections.abc import Callable, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
 
-from aero.survey.output import check_target, whole
+from aero.survey.output import check_target, only_ours, whole
 from aero.survey.record import survey_record
 from aero.survey.tables import write_csv, write_parquet
 
@@ -16,6 +16,18 @@ if TYPE_CHECKING:
     from aero.survey.one_pass import Survey
 
 Progress = Callable[[str, float], None]
+OURS = (
+    "points.csv",
+    "points.parquet",
+    "segments.csv",
+    "crossings.csv",
+    "skipped.csv",
+    "survey.json",
+    "report.html",
+    "figures/*.svg",
+    "figures/*.png",
+)
+"""Patterns of everything a survey writes: a folder that holds anything else is not replaced."""
 FIGURE_KINDS = ("svg", "png")
 
 
@@ -54,7 +66,7 @@ def write_survey(
     InputError
         If the folder exists and may not be replaced, or cannot be written.
     """
-    check_target(out, replace=replace, folder=True)
+    check_out(out, replace=replace)
     tell = progress or (lambda _what, _step: None)
     with whole(out, replace=replace, folder=True) as folder:
         record = survey_record(survey)
@@ -71,6 +83,16 @@ def write_survey(
 
             write_report(survey, record, folder, lambda step: tell("report", 0.5 * step))
         return sorted(p.relative_to(folder).as_posix() for p in folder.rglob("*") if p.is_file())
+
+
+def check_out(out: str | Path, *, replace: bool) -> None:
+    """Raise an InputError where a survey may not be written, before any work.
+
+    An existing folder is replaced only when asked, and only when everything in it was written by a survey.
+    """
+    check_target(out, replace=replace, folder=True)
+    if replace:
+        only_ours(Path(out), OURS)
 
 
 def _points(survey: Survey, folder: Path, tables: Sequence[str], tell: Progress) -> None:

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+from collections.abc import Sequence
 from pathlib import PurePath
 
 import numpy as np
@@ -13,7 +14,7 @@ from aero.trajectory.frames import ALTITUDE_KINDS, air_relative
 from aero.trajectory.meanings import IMPLIED, MEANINGS
 from aero.trajectory.metadata import CHOICES
 from aero.trajectory.table import Table
-from aero.trajectory.trajectory import NO_TIME, Trajectory
+from aero.trajectory.trajectory import NO_TIME, Skipped, Trajectory
 from aero.units import utc
 
 GAP = 10.0  # a step this many times the median step is noted; the factor is a judgement
@@ -68,7 +69,7 @@ def assemble(
     if after is not None:
         notes.clear()  # said with the first piece
     skipped = faults.skipped()
-    _enough(table, len(si["altitude"]), len(skipped), least)
+    _enough(table, len(si["altitude"]), skipped, least)
     if skipped:
         notes.append(
             f"{len(skipped)} of {table.count} rows were left out "
@@ -212,7 +213,16 @@ def _find(
         faults.add_time_order(columns["time"], time, last)
 
 
-def _enough(table: Table, count: int, skipped: int, least: int) -> None:
+def _enough(table: Table, count: int, bad: Sequence[Skipped], least: int) -> None:
+    skipped = len(bad)
+    if skipped > max(count, 10):
+        # one wrong time makes all rows behind it look bad: that is to be mended, not skipped
+        raise InputError(
+            f"{skipped} of {table.count} rows would be left out (first: {table.lines_are} {bad[0].line}: "
+            f"{bad[0].reason}), expected no more than half",
+            source=table.source,
+            remedy="mend the file",
+        )
     if count >= least:
         return
     left = f" after {skipped} bad row{'s were' if skipped != 1 else ' was'} left out" if skipped else ""

@@ -86,6 +86,12 @@ def _kind(path: Path, source: str) -> str:
 
 
 def _top(path: Path, source: str) -> bytes:
+    if path.exists() and not path.is_file() and not path.is_dir():
+        raise InputError(
+            "is a pipe or a device, and a trajectory is read more than once",
+            source=source,
+            remedy="write it to a file first",
+        )
     try:
         with path.open("rb") as stream:
             return stream.read(4096)

@@ -135,7 +135,10 @@ def _open(path: str | Path) -> tuple[Any, Layout, Metadata]:
             remedy="write it again",
         ) from None
     schema = file.schema_arrow
-    layout = lay_out(schema.names, source=source)
+    # the index of a data frame is a column like others once it holds dates
+    dated = [_INDEX.fullmatch(field.name) and pa.types.is_timestamp(field.type) for field in schema]
+    names = ["utc" if is_dates else name for name, is_dates in zip(schema.names, dated, strict=True)]
+    layout = lay_out(names, source=source)
     index = {place: name for place, name in layout.extras.items() if not _INDEX.fullmatch(name)}
     layout = dataclasses.replace(layout, extras=index)
     _check_types(schema, layout, source)

@@ -102,7 +102,7 @@ def test_a_reference_area_that_is_not_the_shapes_earns_a_note(write):
 @pytest.mark.parametrize(
     ("old", "new", "message"),
     [
-        ('mass = "38 kg"', "mass = 38", r"line 2: key 'mass' holds '38' has no unit, expected a mass"),
+        ('mass = "38 kg"', "mass = 38", r"line 2: key 'mass' holds '38', which has no unit, expected a mass"),
         (
             'mass = "38 kg"',
             'mass = "38 m"',
@@ -143,7 +143,7 @@ def test_a_reference_area_that_is_not_the_shapes_earns_a_note(write):
             '"oxygen-cover"',
             r"'oxygen-cover', expected a number from 0 to 1 or 'oxygen-coverage'; did you mean",
         ),
-        ('"radiative"', "300", r"'surface.temperature' holds '300' has no unit.*or write 'radiative'"),
+        ('"radiative"', "300", r"'surface.temperature' holds '300', which has no unit.*or write 'radiative'"),
         ('"radiative"', '"-10 K"', r"'surface.temperature' is '-10 K', expected more than 0"),
         (
             'kind = "sphere-cone"',
@@ -165,7 +165,7 @@ def test_a_reference_area_that_is_not_the_shapes_earns_a_note(write):
         (
             'half_angle = "55 deg"',
             "half_angle = 55",
-            r"'shape.half_angle' holds '55' has no unit, expected a angle",
+            r"'shape.half_angle' holds '55', which has no unit, expected an angle",
         ),
         ('base_radius = "0.45 m"', "", r"\[shape\] key 'base_radius' is missing; add base_radius"),
         (
@@ -173,7 +173,7 @@ def test_a_reference_area_that_is_not_the_shapes_earns_a_note(write):
             'reference = "1 m"',
             r"key 'lengths.reference' is taken by \[reference\] length",
         ),
-        ("step_mm = 3", "step = 3", r"line 11: key 'lengths.step' holds '3' has no unit"),
+        ("step_mm = 3", "step = 3", r"line 11: key 'lengths.step' holds '3', which has no unit"),
         ('"-5 deg"', '"200 deg"', r"'attitude.angle_of_attack' is more than half a turn"),
         ("centre = 0.2", "center = 0.2", r"unknown key 'bridging.drag.center'.*did you mean 'centre'"),
         ("centre = 0.2", "centre = -1", r"'bridging.drag.centre' is -1, expected a number above 0"),

@@ -241,6 +241,28 @@ def test_bad_calls(name: str, run, work: Path) -> None:  # type: ignore[no-untyp
     assert list(work.iterdir()) == []
 
 
+def test_one_wrong_time_is_not_skipped_together_with_all_that_follows(run, work: Path) -> None:  # type: ignore[no-untyped-def]
+    rows = "".join(f"{t},{120 - t},7500\n" for t in range(40))
+    (work / "flight.csv").write_text(
+        "time [s],altitude [km],speed [m/s]\n" + rows.replace("\n3,117", "\n9e9,117")
+    )
+    (work / "body.toml").write_text(VEHICLE)
+    done = run("survey", "flight.csv", "--vehicle", "body.toml", "--out", "out", "--skip-bad-rows", code=2)
+    assert "36 of 40 rows would be left out" in done.stderr
+    assert not (work / "out").exists()
+
+
+def test_a_pipe_is_refused_as_what_it_is(run, work: Path) -> None:  # type: ignore[no-untyped-def]
+    (work / "body.toml").write_text(VEHICLE)
+    done = run("survey", "/dev/null", "--vehicle", "body.toml", "--out", "out", code=2)
+    assert "is a pipe or a device" in done.stderr
+
+
+def test_files_in_each_others_place(run, work: Path, steep: str, marram: str) -> None:  # type: ignore[no-untyped-def]
+    done = run("survey", marram, "--vehicle", steep, "--out", "out", code=2)
+    assert "looks like a trajectory" in done.stderr
+
+
 def test_skipped_rows_are_listed(run, work: Path) -> None:  # type: ignore[no-untyped-def]
     (work / "flight.csv").write_text(FLIGHT.replace("119,7500", "n/a,7500") + "3,117,7480\n")
     (work / "body.toml").write_text(VEHICLE)

@@ -153,6 +153,51 @@ def test_existing_output_is_refused_before_any_work(run, work: Path, steep: str,
     assert [p.name for p in work.iterdir()] == ["out"]
 
 
+def test_a_terminated_run_leaves_nothing(work: Path, marram: str, tmp_path: Path) -> None:
+    import os
+    import signal
+    import subprocess
+    import time
+
+    import numpy as np
+    import pandas as pd
+
+    count = 400_000
+    pd.DataFrame(
+        {"time_s": np.arange(count) * 1e-2, "altitude_m": np.linspace(150e3, 30e3, count), "speed_m_s": 7e3}
+    ).to_parquet(tmp_path / "long.parquet")
+    folder = tmp_path / "here"
+    folder.mkdir()
+    command = [sys.executable, "-m", "aero", "survey", str(tmp_path / "long.parquet"), "--vehicle", marram]
+    process = subprocess.Popen(
+        [*command, "--out", "out"], cwd=folder, stdout=subprocess.PIPE, stderr=subprocess.PIPE
+    )
+    deadline = time.monotonic() + 60.0
+    while not list(folder.glob(".aero-*")) and process.poll() is None and time.monotonic() < deadline:
+        time.sleep(0.01)
+    os.kill(process.pid, signal.SIGTERM)
+    process.communicate()
+    assert process.returncode == 128 + signal.SIGTERM
+    assert list(folder.iterdir()) == []
+
+
+def test_a_slow_warm_flight_says_that_it_cools(run, work: Path) -> None:  # type: ignore[no-untyped-def]
+    (work / "slow.csv").write_text("time_s,altitude_km,speed_m_s\n0,12,150\n60,10,150\n120,9,140\n")
+    (work / "ball.toml").write_text(
+        'mass = "3 kg"\n[reference]\narea = "0.1 m2"\nlength = "0.3 m"\n[shape]\nkind = "sphere"\n'
+        'diameter = "0.3 m"\n[surface]\ntemperature = "350 K"\n'
+    )
+    done = run("survey", "slow.csv", "--vehicle", "ball.toml", "--out", "out")
+    text = " ".join(done.stdout.split())
+    assert "the wall loses heat" in text
+    assert "of the heat load falls" not in text
+
+
+def test_an_unusual_pair_of_altitude_and_speed_is_noted(run) -> None:  # type: ignore[no-untyped-def]
+    done = run("point", "--altitude", "120m", "--speed", "7km/s", "--length", "1m")
+    assert "check the units" in done.stdout
+
+
 def test_demo_runs_from_any_folder(run, work: Path) -> None:  # type: ignore[no-untyped-def]
     done = run("demo")
     assert (work / "aero-demo" / "report.html").is_file()

@@ -114,14 +114,6 @@ def test_strips_stand_smallest_first_with_every_piece_and_its_share(capsule: Sim
     assert any(text.endswith(f" {100 * largest:.0f} %") for text in words(figure))
 
 
-def test_a_piece_too_narrow_for_its_text_stays_without() -> None:
-    from aero.report.pieces import Piece, percent, piece_text
-
-    piece = Piece("free-molecular", 0.0, 1.0, 0.031)
-    assert [piece_text(piece, width) for width in (2.0, 0.4, 0.05)] == ["free-molecular 3.1 %", "3.1 %", ""]
-    assert percent(1e-5) == "<0.1"
-
-
 def test_thousands_of_pieces_stay_a_small_figure_with_the_time_of_each_regime_kept() -> None:
     edges = np.linspace(0.0, 86400.0, 20_001)
     regimes = np.where(np.arange(20_000) % 4 == 0, "slip", "transitional")

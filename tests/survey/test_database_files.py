@@ -54,7 +54,7 @@ def test_outputs_that_exist_stay(made: Database, tmp_path: Path) -> None:
     somebodys = tmp_path / "notes"
     somebodys.mkdir()
     (somebodys / "thesis.txt").write_text("years of work")
-    with pytest.raises(InputError, match="holds no database, so it is not replaced"):
+    with pytest.raises(InputError, match=r"holds 'thesis\.txt', which is no part of such an output"):
         made.write(somebodys, replace=True)
     made.write(tmp_path / "folder")
     assert made.write(tmp_path / "folder", replace=True) == [

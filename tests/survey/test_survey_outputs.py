@@ -12,7 +12,7 @@ import pytest
 
 import aero
 from aero.errors import InputError
-from aero.survey.output import whole
+from aero.survey.output import held, whole
 
 TABLES = {"points.csv", "points.parquet", "segments.csv", "crossings.csv", "survey.json"}
 
@@ -122,9 +122,41 @@ def test_an_existing_output_needs_replace(surveyed: aero.Survey, tmp_path: Path)
 def test_a_folder_of_somebody_elses_is_not_replaced(surveyed: aero.Survey, tmp_path: Path) -> None:
     (tmp_path / "out").mkdir()
     (tmp_path / "out" / "thesis.txt").write_text("years of work")
-    with pytest.raises(InputError, match="holds no survey"):
+    with pytest.raises(InputError, match=r"holds 'thesis\.txt', which is no part of such an output"):
         surveyed.write(tmp_path / "out", replace=True)
     assert (tmp_path / "out" / "thesis.txt").read_text() == "years of work"
+
+
+def test_files_added_to_a_survey_are_not_wiped(surveyed: aero.Survey, tmp_path: Path) -> None:
+    surveyed.write(tmp_path / "out", figures="none")
+    (tmp_path / "out" / "figures").mkdir()
+    (tmp_path / "out" / "figures" / "mine.tex").write_text("mine")
+    with pytest.raises(InputError, match=r"holds 'figures/mine\.tex'"):
+        surveyed.write(tmp_path / "out", replace=True)
+
+
+def test_what_a_killed_run_left_is_swept_and_what_a_living_one_holds_is_not(
+    surveyed: aero.Survey, tmp_path: Path
+) -> None:
+    dead, living = tmp_path / ".aero-dead", tmp_path / ".aero-living"
+    for work in (dead, living):
+        work.mkdir()
+        (work / "lock").touch()
+    with held(living):
+        surveyed.write(tmp_path / "out", figures="none")
+    assert sorted(p.name for p in tmp_path.iterdir()) == [".aero-living", "out"]
+
+
+def test_what_appears_meanwhile_is_not_overwritten(tmp_path: Path) -> None:
+    def race() -> None:
+        with whole(tmp_path / "out", replace=False, folder=True) as new:
+            (new / "ours").touch()
+            (tmp_path / "out").mkdir()
+            (tmp_path / "out" / "theirs").touch()
+
+    with pytest.raises(InputError, match="exists"):
+        race()
+    assert [p.name for p in (tmp_path / "out").iterdir()] == ["theirs"]
 
 
 def test_a_fault_on_the_way_leaves_nothing_and_keeps_the_old(tmp_path: Path) -> None:

@@ -6,6 +6,7 @@ from pathlib import Path
 from typing import Any
 
 import numpy as np
+import pandas as pd
 import pyarrow as pa
 import pytest
 from pyarrow import parquet
@@ -164,3 +165,14 @@ def test_pieces_of_too_little(tmp_path: Path) -> None:
         InputError, match=r"holds 1 good point, expected at least 2; give the whole trajectory"
     ):
         list(parquet_pieces(_write(tmp_path / "a.parquet", one)))
+
+
+def test_the_dates_of_a_data_frames_index_are_its_times(tmp_path):
+    frame = pd.DataFrame(
+        {"altitude_m": [1e5, 9e4, 8e4], "speed_m_s": [7e3] * 3},
+        index=pd.date_range("2026-03-01", periods=3, freq="s"),
+    )
+    frame.to_parquet(tmp_path / "flight.parquet")
+    flight = read_trajectory(tmp_path / "flight.parquet")
+    assert flight.time.tolist() == [0.0, 1.0, 2.0]
+    assert flight.epoch == np.datetime64("2026-03-01")
