@@ -189,6 +189,8 @@ def heat_band(
     density_sigma: tuple[ArrayLike, ArrayLike],
     accommodation: ArrayLike,
     accommodation_sigma: ArrayLike,
+    radius_sigma: float = 0.0,
+    catalytic: bool = True,
 ) -> Band:
     """Return the 95 % band of the stagnation heat flux.
 
@@ -201,6 +203,11 @@ def heat_band(
         Relative 1-sigma of the density.
     accommodation, accommodation_sigma : (...,) array_like
         Energy accommodation and its 1-sigma.
+    radius_sigma : float, optional
+        Relative 1-sigma of the nose radius; the continuum flux goes with its root.
+    catalytic : bool, optional
+        Whether the flux is that of a fully catalytic wall. Otherwise its catalysis is in the flux, and the
+        one-sided part for what a wall may not recombine falls away.
 
     Returns
     -------
@@ -238,11 +245,14 @@ def heat_band(
         "accommodation": thin * (spread / np.maximum(floats(accommodation), spread)),
         "bridge": thin * heating.continuum_weight * (4.0 * bridge.sigma),
         "continuum level": thick * convective_sigma(v),
+        "nose radius": thick * (0.5 * radius_sigma),
         "radiative level": radiative * radiative_sigma(heating.radiative_validity),
         "wall": np.clip(by_wall, -1.0, 1.0),
     }
     dissociated = np.clip((v - 3000.0) / 2000.0, 0.0, 1.0)
-    below = {"non-catalytic wall": -np.log1p(thick * dissociated * (NON_CATALYTIC - 1.0))}
+    below = (
+        {"non-catalytic wall": -np.log1p(thick * dissociated * (NON_CATALYTIC - 1.0))} if catalytic else {}
+    )
     band = _band(total, contributions, below, {})
     low = np.where(resting, total, np.minimum(band.low, band.high))
     high = np.where(resting, total, np.maximum(band.low, band.high))

@@ -137,7 +137,7 @@ def command(**options: Any) -> None:
         raise InputError(
             "says nowhere to write the rows", source="aero database", remedy="give --out FILE or --format csv"
         )
-    vehicle = read_vehicle(options["vehicle_file"])
+    vehicle = shared.vehicle_with(read_vehicle(options["vehicle_file"]), **options)
     axes = [options[k] for k in ("altitude", "speed", "angle_of_attack", "sideslip")]
     axes[2] = (vehicle.angle_of_attack,) if axes[2] is None else axes[2]
     check_rows([len(values) for values in axes])

@@ -50,4 +50,7 @@ def command(**options: Any) -> None:
         wall=None,
         perfect_gas=False,
         convective="sutton-graves",
+        surface_model=None,
+        catalysis=None,
+        no_shadowing=False,
     )

@@ -82,7 +82,7 @@ def command(**options: Any) -> None:
     if options["vehicle_file"] is not None:
         from aero.body import read_vehicle
 
-        vehicle = read_vehicle(options["vehicle_file"])
+        vehicle = shared.vehicle_with(read_vehicle(options["vehicle_file"]), **options)
     places = {k: options[k] for k in ("latitude", "longitude", "heading") if options[k] is not None}
     air_model, why = shared.choose_atmosphere(
         missing=missing_of(options),

@@ -2,6 +2,7 @@
 
 from __future__ import annotations
 
+import dataclasses
 from collections.abc import Callable
 from typing import TYPE_CHECKING, Any
 
@@ -13,6 +14,7 @@ from aero.units import accepted, quantity, utc
 
 if TYPE_CHECKING:
     from aero.air.state import Atmosphere
+    from aero.body import Vehicle
     from aero.survey.settings import Settings
 
 Decorator = Callable[[Callable[..., Any]], Callable[..., Any]]
@@ -20,6 +22,8 @@ ATMOSPHERE_NAMES = ("standard-1976", "nrlmsise-00", "msis-2.1")
 PLACED = ("nrlmsise-00", "msis-2.1")
 ACTIVITY_NAMES = ("low", "moderate", "high", "observed")
 FREE_PATH_NAMES = ("hard-sphere", "vhs", "viscosity")
+SURFACE_MODELS = ("maxwell", "cll")
+CATALYSES = ("full", "partial", "none")
 CONVECTIVE_NAMES = ("sutton-graves", "detra-kemp-riddell", "brandis-johnston", "fay-riddell")
 
 
@@ -162,6 +166,19 @@ free_path_option = click.option(
     help="Definition of the mean free path shown and used for the tags.",
 )
 body_options = together(
+    click.option(
+        "--surface-model",
+        type=click.Choice(SURFACE_MODELS),
+        help="How molecules leave the surface; replaces the vehicle's own.",
+    ),
+    click.option(
+        "--catalysis",
+        type=click.Choice(CATALYSES),
+        help="How far the wall recombines atoms; replaces the vehicle's own.",
+    ),
+    click.option(
+        "--no-shadowing", is_flag=True, help="Elements behind others get the flow as if they stood free."
+    ),
     click.option("--wall-temperature", "wall", type=Wall(), help="Replaces the vehicle's own."),
     click.option(
         "--perfect-gas", is_flag=True, help="Stagnation pressure of a perfect gas in the continuum limit."
@@ -185,6 +202,20 @@ model_options = together(
     body_options,
 )
 replace_option = click.option("--replace", is_flag=True, help="Replace an existing output.")
+
+
+def vehicle_with(vehicle: Vehicle, **options: Any) -> Vehicle:
+    """Return a vehicle with what the body options replace of it."""
+    changes = {
+        name: options[option]
+        for name, option in (("model", "surface_model"), ("catalysis", "catalysis"))
+        if options[option] is not None
+    }
+    changed = vehicle.with_surface(**changes) if changes else vehicle
+    if not options["no_shadowing"]:
+        return changed
+    free = dataclasses.replace(changed, shadows=False)
+    return free.with_parts(free.parts) if free.parts else free
 
 
 def settings_from(**options: Any) -> Settings:

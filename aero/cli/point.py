@@ -46,6 +46,9 @@ if TYPE_CHECKING:
     type=shared.Quantity("angle", "10deg"),
     help="Replaces the vehicle's own angle of attack.",
 )
+@click.option(
+    "--sideslip", type=shared.Quantity("angle", "5deg"), help="Replaces the vehicle's own sideslip."
+)
 @shared.place_options
 @shared.atmosphere_options
 @shared.model_options
@@ -55,8 +58,11 @@ def command(**options: Any) -> None:
     from aero.survey.one_point import point
 
     vehicle = _vehicle(options)
-    if vehicle is None and (options["angle_of_attack"] is not None or options["perfect_gas"]):
-        idle = "--angle-of-attack" if options["angle_of_attack"] is not None else "--perfect-gas"
+    if vehicle is not None:
+        vehicle = shared.vehicle_with(vehicle, **options)
+    idle = next((name for name in _OF_A_BODY if options[name] not in (None, False)), None)
+    if vehicle is None and idle is not None:
+        idle = f"--{idle.replace('_', '-')}"
         raise InputError("acts on a body, and none is given", source=idle, remedy="add --vehicle or --shape")
     lengths = _lengths(options["lengths"], vehicle)
     if vehicle is None and not lengths:
@@ -81,6 +87,7 @@ def command(**options: Any) -> None:
         longitude=options["longitude"],
         date=options["date"],
         angle_of_attack=options["angle_of_attack"],
+        sideslip=options["sideslip"],
     )
     style = options["style"]
     if style == "json":
@@ -125,6 +132,7 @@ def _lengths(given: tuple[str, ...], vehicle: Vehicle | None) -> dict[str, float
     return lengths
 
 
+_OF_A_BODY = ("angle_of_attack", "sideslip", "perfect_gas", "surface_model", "catalysis", "no_shadowing")
 # option -> (key of a [shape] table, dimension)
 _DIMENSIONS = {
     "diameter": ("diameter", "length"),

@@ -63,7 +63,7 @@ def run(**options: Any) -> None:
     from aero.trajectory import read_trajectory
 
     settings = shared.settings_from(**options)
-    vehicle = read_vehicle(options["vehicle_file"])
+    vehicle = shared.vehicle_with(read_vehicle(options["vehicle_file"]), **options)
     trajectory = read_trajectory(options["trajectory"], skip_bad_rows=options["skip_bad_rows"])
     trajectory = placed(
         trajectory, date=options["date"], latitude=options["latitude"], longitude=options["longitude"]

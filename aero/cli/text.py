@@ -21,6 +21,9 @@ CROSSING_COLUMNS = (
 )
 
 
+_PARTS = (("drag", "Drag"), ("attitude", "Attitude"), ("heating", "Stagnation heating"))
+
+
 def colour() -> bool:
     """Whether stdout is a terminal that may show colours."""
     return sys.stdout.isatty()
@@ -42,7 +45,7 @@ def condition_text(answer: Mapping[str, Any]) -> str:
         "",
         table_text(_columns(answer["lengths"]), colour=colour()),
     ]
-    for key, title in (("drag", "Drag"), ("heating", "Stagnation heating")):
+    for key, title in _PARTS:
         if key in answer:
             parts += [f"\n{title}", facts_text(_known(answer[key]))]
     return "\n".join(parts)

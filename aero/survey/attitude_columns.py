@@ -43,7 +43,6 @@ def attitude_columns(
     Parameters
     ----------
     passing : Passing
-        With `sideslip` (rad) where it has one.
     wall : (n,) array [K]
     columns : mapping of str to (n,) array
         What is computed already; `drag_bridge`, where it is there, is not computed again.
@@ -64,7 +63,7 @@ def attitude_columns(
         return {}
     shape = columns["drag_coefficient"].shape if "drag_coefficient" in columns else np.shape(passing.path)
     angle = np.broadcast_to(floats(passing.angle), shape)
-    sideslip = np.broadcast_to(floats(getattr(passing, "sideslip", 0.0)), shape)
+    sideslip = np.broadcast_to(floats(passing.sideslip), shape)
     number = similarity(passing, wall, bridge_for(vehicle, "drag"))
 
     def at(a: Floats) -> LoadsBetween:

@@ -84,8 +84,13 @@ def conditions(
             wall_choice(inputs, vehicle, settings),
             vehicle.angle_of_attack if inputs.angle_of_attack is None else inputs.angle_of_attack,
             atmosphere.uncertainty(air.altitude, utc=inputs.utc),
+            vehicle.sideslip if inputs.sideslip is None else inputs.sideslip,
         )
         columns |= vehicle_columns(passing)
+        if vehicle.moment_point is not None:
+            from aero.survey.attitude_columns import attitude_columns
+
+            columns |= attitude_columns(passing, columns["wall_temperature_K"], columns)
         wall = columns["wall_temperature_K"]
         nose = vehicle.nose_radius
         _similarity_columns(columns, moving, vehicle.reference_length)

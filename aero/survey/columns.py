@@ -74,10 +74,42 @@ _AFTER = (
 _SPECIES = tuple(Column(f"n_{s}_m3", "1/m³", f"number density of {s}") for s in SPECIES)
 
 
-def point_columns(lengths: Sequence[str]) -> list[Column]:
-    """Return the columns of the points table for the named lengths, `reference` among them."""
+_ATTITUDE = (
+    Column("sideslip_deg", "deg", "sideslip"),
+    Column("axial_force_coefficient", "1", "bridged axial force coefficient, positive towards the rear"),
+    Column("normal_force_coefficient", "1", "bridged normal force coefficient, positive upwards"),
+    Column("side_force_coefficient", "1", "bridged side force coefficient, positive to the right"),
+    Column("roll_moment_coefficient", "1", "bridged roll moment coefficient about the moment point"),
+    Column("pitch_moment_coefficient", "1", "bridged pitch moment coefficient, positive nose up"),
+    Column("yaw_moment_coefficient", "1", "bridged yaw moment coefficient, positive nose to the right"),
+    *(
+        Column(f"{name}_{kind}", "1", text)
+        for kind, text in (
+            ("free_molecular", "its free-molecular limit"),
+            ("continuum", "its continuum limit"),
+            ("local", "the same by the local bridge, one fraction an element"),
+        )
+        for name in ("axial_force_coefficient", "normal_force_coefficient", "pitch_moment_coefficient")
+    ),
+    Column("centre_of_pressure_m", "m", "where the normal force acts, forward of the moment point"),
+    Column("centre_of_pressure_local_m", "m", "the same by the local bridge"),
+    Column(
+        "pitch_stability_per_rad",
+        "1/rad",
+        "slope of the pitch moment over angle of attack; negative is stable",
+    ),
+    Column("pitch_stability_local_per_rad", "1/rad", "the same by the local bridge"),
+    Column("projected_area_m2", "m²", "surface that the flow reaches, projected along it"),
+)
+
+
+def point_columns(lengths: Sequence[str], *, attitude: bool = False) -> list[Column]:
+    """Return the columns of the points table for the named lengths, `reference` among them.
+
+    With `attitude`, those of a vehicle that states a moment point are among them.
+    """
     each = [Column(c.name.format(n), c.unit, f"{c.meaning} '{n}'") for n in lengths for c in _PER_LENGTH]
-    return [*_BEFORE, *each, *_AFTER, *_SPECIES]
+    return [*_BEFORE, *each, *_AFTER, *(_ATTITUDE if attitude else ()), *_SPECIES]
 
 
 def free_name(name: str, taken: Iterable[str]) -> str:

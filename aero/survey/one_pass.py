@@ -208,6 +208,7 @@ def block_inputs(trajectory: Trajectory, rows: slice, utc: Times | None) -> Inpu
         longitude=part(trajectory.longitude),
         utc=None if utc is None else utc[rows],
         angle_of_attack=part(trajectory.angle_of_attack),
+        sideslip=part(trajectory.sideslip),
         wall_temperature=part(trajectory.wall_temperature),
     )
 
@@ -223,7 +224,7 @@ def _points(
     """Return all computed columns, filled block by block into arrays made once."""
     count = trajectory.altitude.size
     _warm_heap()
-    kept = {column.name for column in point_columns(list(lengths))}
+    kept = {column.name for column in point_columns(list(lengths), attitude=True)}
     utc = trajectory.utc if atmosphere.needs_place else None
     columns: dict[str, np.ndarray] = {}
     blocks = [slice(start, min(start + BLOCK, count)) for start in range(0, count, BLOCK)]
@@ -283,13 +284,14 @@ def _frame(columns: dict[str, np.ndarray], trajectory: Trajectory, lengths: dict
     }
     if trajectory.time is not None:
         known["time_s"] = trajectory.time
-    for name in ("latitude", "longitude", "flight_path_angle", "angle_of_attack"):
+    for name in ("latitude", "longitude", "flight_path_angle", "angle_of_attack", "sideslip"):
         values = getattr(trajectory, name)
         if values is not None:
             known[f"{name}_deg"] = np.degrees(values)
     data: dict[str, object] = {}
     kind = pd.CategoricalDtype(list(REGIMES), ordered=False)
-    for column in point_columns(list(lengths)):
+    attitude = "pitch_moment_coefficient" in columns
+    for column in point_columns(list(lengths), attitude=attitude):
         if column.name == "utc":
             utc = trajectory.utc
             nat = np.broadcast_to(np.datetime64("NaT", "us"), count)
@@ -386,6 +388,7 @@ def track_inputs(track: Track, trajectory: Trajectory, when: Floats) -> Inputs:
         longitude=track.longitude(when) if placed and track.longitude else None,
         utc=None if trajectory.epoch is None else clock(trajectory.epoch, when),
         angle_of_attack=between(trajectory.angle_of_attack),
+        sideslip=between(trajectory.sideslip),
         wall_temperature=between(trajectory.wall_temperature),
     )
 

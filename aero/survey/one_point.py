@@ -32,6 +32,7 @@ def point(
     longitude: float | None = None,
     date: np.datetime64 | None = None,
     angle_of_attack: float | None = None,
+    sideslip: float | None = None,
 ) -> dict[str, Any]:
     """Return everything known about one flight condition.
 
@@ -49,7 +50,7 @@ def point(
     latitude, longitude : float, optional [rad]
     date : datetime64, optional
         UTC.
-    angle_of_attack : float, optional [rad]
+    angle_of_attack, sideslip : float, optional [rad]
 
     Returns
     -------
@@ -77,6 +78,7 @@ def point(
     check_angle("latitude", latitude)
     check_angle("longitude", longitude)
     from aero.air import StandardAtmosphere1976
+    from aero.survey.attitude_columns import ATTITUDE_COLUMNS
 
     air_model: Atmosphere = atmosphere or StandardAtmosphere1976()
     check_altitudes(air_model, np.array([altitude]), source="--altitude")
@@ -84,7 +86,7 @@ def point(
     named = dict(lengths or {})
     if vehicle is not None:
         named = {"reference": vehicle.reference_length, **vehicle.lengths, **named}
-    inputs = _one(altitude, speed, latitude, longitude, date, angle_of_attack)
+    inputs = _one(altitude, speed, latitude, longitude, date, angle_of_attack, sideslip)
     columns = conditions(inputs, air_model, vehicle, named, chosen)
     row = {name: values[0].item() for name, values in columns.items()}
     answer: dict[str, Any] = {"air": _air(air_model, row), "gas": _gas(chosen, row)}
@@ -92,6 +94,8 @@ def point(
     if vehicle is not None:
         answer["drag"] = _drag(row)
         answer["heating"] = _heating(row, speed)
+        if "pitch_moment_coefficient" in row:
+            answer["attitude"] = {name: row[name] for name in ATTITUDE_COLUMNS}
     answer["notes"] = list(point_notes(vehicle, air_model, chosen, row, altitude, speed, date))
     return answer
 
@@ -103,6 +107,7 @@ def _one(
     longitude: float | None,
     date: np.datetime64 | None,
     angle_of_attack: float | None,
+    sideslip: float | None,
 ) -> Inputs:
     def row(value: float | None) -> np.ndarray | None:
         return None if value is None else np.array([value])
@@ -114,6 +119,7 @@ def _one(
         longitude=row(longitude),
         utc=None if date is None else np.array([date]),
         angle_of_attack=row(angle_of_attack),
+        sideslip=row(sideslip),
     )
 
 

@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 
 import numpy as np
 
@@ -15,8 +15,11 @@ from aero.bridge.functions import Fraction
 from aero.bridge.uncertainty import drag_band, heat_band
 from aero.errors import InputError
 from aero.force import Coefficients, continuum, free_molecular
+from aero.force.load_continuum import continuum_loads
+from aero.force.load_limits import free_molecular_loads
+from aero.force.tumbling import tumbling_coefficients
 from aero.gas import Flow, emitted_free_path, free_path_uncertainty
-from aero.heat import stagnation
+from aero.heat import heating_radius, stagnation
 from aero.survey.inputs import Inputs
 from aero.survey.settings import Settings
 
@@ -58,6 +61,7 @@ class Passing:
         Angle of attack.
     density_uncertainty : (bias, scatter)
         Relative 1-sigma of the density.
+    sideslip : (n,) array or float [rad]
     """
 
     vehicle: Vehicle
@@ -69,6 +73,20 @@ class Passing:
     wall: Floats | float | str
     angle: Floats | float
     density_uncertainty: tuple[Floats, Floats]
+    sideslip: Floats | float = 0.0
+
+    @property
+    def by_elements(self) -> bool:
+        """Whether drag and lift need the sum over surface elements.
+
+        The tables of a body see its angle of attack and one surface; sideslip, parts with surfaces of their own
+        and other gas-surface models than Maxwell's are the elements' business.
+        """
+        vehicle = self.vehicle
+        if vehicle.shape is None:
+            return False
+        surfaces = {vehicle.surface, *(part.surface for part in vehicle.parts)}
+        return len(surfaces) > 1 or vehicle.surface.model != "maxwell" or bool(np.any(self.sideslip))
 
     @property
     def accommodation_spread(self) -> Floats:
@@ -87,6 +105,7 @@ def _heat_columns(passing: Passing) -> tuple[Floats, dict[str, np.ndarray]]:
     """Return the wall temperature and the columns of heating, NaN where the vehicle has no nose radius."""
     vehicle, wall = passing.vehicle, passing.wall
     bridge = bridge_for(vehicle, "heating")
+    less_catalytic = vehicle.surface.catalysis != "full"
     heat = stagnation(
         vehicle,
         passing.air,
@@ -95,6 +114,7 @@ def _heat_columns(passing: Passing) -> tuple[Floats, dict[str, np.ndarray]]:
         wall,
         correlation=passing.settings.convective,
         exponent=bridge.exponent,
+        catalysis=less_catalytic,
     )
     if heat is None:
         if isinstance(wall, str):
@@ -105,6 +125,7 @@ def _heat_columns(passing: Passing) -> tuple[Floats, dict[str, np.ndarray]]:
             )
         nothing = np.full_like(passing.path, np.nan)
         return np.broadcast_to(floats(wall), nothing.shape), dict.fromkeys(HEAT, nothing)
+    radius = heating_radius(vehicle)
     band = heat_band(
         heat,
         bridge,
@@ -112,6 +133,8 @@ def _heat_columns(passing: Passing) -> tuple[Floats, dict[str, np.ndarray]]:
         density_sigma=passing.density_uncertainty,
         accommodation=passing.accommodated,
         accommodation_sigma=passing.accommodation_spread,
+        radius_sigma=0.0 if radius is None else radius.sigma,
+        catalytic=not less_catalytic,
     )
     values = (heat.total, heat.free_molecular, heat.continuum, heat.radiative, band.low, band.high)
     return heat.wall_temperature, dict(zip(HEAT, values, strict=True))
@@ -155,8 +178,16 @@ def _drag_columns(passing: Passing, wall: Floats) -> dict[str, np.ndarray]:
 
 
 def limits(passing: Passing, wall: Floats) -> tuple[Coefficients, Coefficients]:
-    """Return the free-molecular and the continuum coefficients."""
+    """Return the free-molecular and the continuum coefficients.
+
+    By elements, drag and lift are the elements' and the derivatives of drag, which only the band uses, those of
+    the body's own table without sideslip.
+    """
     vehicle, air, moving = passing.vehicle, passing.air, passing.moving
+    if vehicle.tumbling and vehicle.shape is not None:
+        return tumbling_coefficients(
+            vehicle, air, moving, wall, passing.accommodated, real_gas=passing.settings.real_gas
+        )
     free = free_molecular(vehicle, air, moving, wall, passing.accommodated, passing.angle)
     dense = continuum(
         vehicle,
@@ -167,7 +198,22 @@ def limits(passing: Passing, wall: Floats) -> tuple[Coefficients, Coefficients]:
         real_gas=passing.settings.real_gas,
         wall_temperature=wall,
     )
-    return free, dense
+    if not passing.by_elements:
+        return free, dense
+    thin = free_molecular_loads(
+        vehicle, air, moving, wall, passing.accommodated, passing.angle, passing.sideslip
+    )
+    thick = continuum_loads(
+        vehicle,
+        air,
+        moving,
+        passing.path / vehicle.reference_length,
+        passing.angle,
+        passing.sideslip,
+        real_gas=passing.settings.real_gas,
+        wall_temperature=wall,
+    )
+    return replace(free, drag=thin.drag, lift=thin.lift), replace(dense, drag=thick.drag, lift=thick.lift)
 
 
 def similarity(passing: Passing, wall: Floats, bridge: Bridge) -> Floats:
