@@ -23,7 +23,7 @@ LOW, HIGH = -7.0, 7.0  # ln S, as in `aero.force.speed_table`
 MARGIN = 3  # nodes beyond each end for the slopes
 BLOCK = 2048  # points looked up at once
 KEPT_TABLES = 640
-WALLS = 6  # wall ratios between which a Cercignani-Lampis-Lord wall is interpolated: 1e-5 over a factor 6
+WALLS = 6  # wall ratios a Cercignani-Lampis-Lord wall is interpolated on: 4e-8 of drag over a factor 6
 _FASTEST_AWAY = 6.0
 
 
