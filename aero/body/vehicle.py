@@ -24,6 +24,7 @@ BRIDGED: dict[str, tuple[tuple[str, ...], tuple[str, ...]]] = {
     "heating": ((), ("exponent", "sigma")),
 }
 """Coefficient that [bridging] may override -> (keys of text, keys of numbers)."""
+PARTIAL = 0.01  # recombination coefficient of a partly catalytic wall where none is stated: glassy coatings, judgement
 AREA_MISMATCH = 0.1  # relative; reference and frontal area further apart than this earn a note (judgement)
 
 
@@ -219,6 +220,16 @@ class Vehicle:
             return found
         parts = (replace(part, surface=replace(part.surface, **changes)) for part in self.parts)
         return found.with_parts(tuple(parts))
+
+    def with_catalysis(self, catalysis: str) -> Vehicle:
+        """Return the vehicle with another wall catalysis, full, partial or none.
+
+        Partial recombines `PARTIAL` of the atoms, unless a partial surface states its own.
+        """
+        share = {"full": 1.0, "none": 0.0}.get(catalysis, PARTIAL)
+        if catalysis == "partial" and self.surface.catalysis == "partial":
+            share = self.surface.recombination
+        return self.with_surface(catalysis=catalysis, recombination=share)
 
     def __str__(self) -> str:
         kind = self.shape.kind if self.shape is not None else "no shape"

@@ -206,12 +206,11 @@ replace_option = click.option("--replace", is_flag=True, help="Replace an existi
 
 def vehicle_with(vehicle: Vehicle, **options: Any) -> Vehicle:
     """Return a vehicle with what the body options replace of it."""
-    changes = {
-        name: options[option]
-        for name, option in (("model", "surface_model"), ("catalysis", "catalysis"))
-        if options[option] is not None
-    }
-    changed = vehicle.with_surface(**changes) if changes else vehicle
+    changed = vehicle
+    if options["surface_model"] is not None:
+        changed = changed.with_surface(model=options["surface_model"])
+    if options["catalysis"] is not None:
+        changed = changed.with_catalysis(options["catalysis"])
     if not options["no_shadowing"]:
         return changed
     free = dataclasses.replace(changed, shadows=False)

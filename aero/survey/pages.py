@@ -2,7 +2,7 @@
 
 from __future__ import annotations
 
-from collections.abc import Callable, Mapping
+from collections.abc import Callable, Mapping, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING, Any
 
@@ -27,6 +27,7 @@ from aero.report import (
     svg,
     why_no_heating,
 )
+from aero.survey.body_pages import body_figure, body_sections, hottest_heating
 from aero.survey.field import map_field
 from aero.survey.models import models_used
 
@@ -45,7 +46,11 @@ CAUTIONS = (
 
 
 def write_report(
-    survey: Survey, record: Mapping[str, Any], folder: Path, progress: Callable[[float], None]
+    survey: Survey,
+    record: Mapping[str, Any],
+    compared: pd.DataFrame,
+    folder: Path,
+    progress: Callable[[float], None],
 ) -> None:
     """Write `figures/*.svg`, `figures/*.png` and `report.html` into a folder.
 
@@ -54,6 +59,8 @@ def write_report(
     survey : Survey
     record : mapping
         As from `survey_record`; the page's provenance is made from it.
+    compared : DataFrame
+        As from `comparisons`.
     folder : Path
     progress : callable
         Called with the share of this work just done.
@@ -70,13 +77,17 @@ def write_report(
     place = folder / "figures"
     place.mkdir()
     makers = figure_makers(survey, footer)
+    heating = hottest_heating(survey)
+    if heating is not None:
+        makers["body"] = lambda: body_figure(survey, heating[0], footer)
     for name, make in makers.items():
         figure = make()
         drawn[name] = svg(figure)
         (place / f"{name}.svg").write_text(drawn[name], encoding="utf-8")
         (place / f"{name}.png").write_bytes(png(figure))
         progress(0.9 / len(makers))
-    page = report_page(survey, record, drawn)
+    bodies = body_sections(survey, compared, drawn, heating)
+    page = report_page(survey, record, drawn, bodies)
     (folder / "report.html").write_text(render(page), encoding="utf-8")
     progress(0.1)
 
@@ -106,7 +117,9 @@ def figure_makers(survey: Survey, footer: str = "") -> dict[str, Callable[[], Fi
     return makers
 
 
-def report_page(survey: Survey, record: Mapping[str, Any], drawn: Mapping[str, str]) -> Page:
+def report_page(
+    survey: Survey, record: Mapping[str, Any], drawn: Mapping[str, str], bodies: Sequence[Section] = ()
+) -> Page:
     """Return the page of a survey.
 
     Parameters
@@ -115,11 +128,14 @@ def report_page(survey: Survey, record: Mapping[str, Any], drawn: Mapping[str, s
     record : mapping
         As from `survey_record`.
     drawn : mapping of figure name to SVG
+    bodies : sequence of Section
+        What stands between stagnation heating and the atmosphere.
     """
+    first, last = report_sections(survey, record, drawn)
     return Page(
         title=f"{survey.vehicle.name} on {survey.trajectory.name}",
         sentence=survey.summary,
-        sections=report_sections(survey, record, drawn),
+        sections=[*first, *bodies, *last],
         models=models_used(survey),
         notes=survey.notes,
         cautions=CAUTIONS,
@@ -130,8 +146,10 @@ def report_page(survey: Survey, record: Mapping[str, Any], drawn: Mapping[str, s
     )
 
 
-def report_sections(survey: Survey, record: Mapping[str, Any], drawn: Mapping[str, str]) -> list[Section]:
-    """Return the sections of the page in reading order."""
+def report_sections(
+    survey: Survey, record: Mapping[str, Any], drawn: Mapping[str, str]
+) -> tuple[list[Section], list[Section]]:
+    """Return the sections of the page in reading order: those up to heating, and those after the body."""
 
     def pictures(name: str, caption: str) -> list[Picture]:
         return [Picture(drawn[name], caption)] if name in drawn else []
@@ -149,7 +167,7 @@ def report_sections(survey: Survey, record: Mapping[str, Any], drawn: Mapping[st
         file="segments.csv",
     )
     timed = bool(len(survey.segments))
-    return [
+    first = [
         Section(
             "Regimes along the flight",
             pictures=pictures(
@@ -177,12 +195,15 @@ def report_sections(survey: Survey, record: Mapping[str, Any], drawn: Mapping[st
             text=[heat_text(survey, record)],
             pictures=pictures("heating", "Stagnation heat flux with its limits and band, and the heat load."),
         ),
+    ]
+    last = [
         Section(
             "Atmosphere",
             text=[survey.atmosphere.description + "."],
             pictures=pictures("air", "The air the flight met."),
         ),
     ]
+    return first, last
 
 
 def facts(survey: Survey, record: Mapping[str, Any]) -> dict[str, str]:

@@ -8,6 +8,7 @@ from collections.abc import Callable, Sequence
 from pathlib import Path
 from typing import TYPE_CHECKING
 
+from aero.survey.comparisons import comparisons
 from aero.survey.output import check_target, only_ours, whole
 from aero.survey.record import survey_record
 from aero.survey.tables import write_csv, write_parquet
@@ -21,6 +22,7 @@ OURS = (
     "points.parquet",
     "segments.csv",
     "crossings.csv",
+    "comparisons.csv",
     "skipped.csv",
     "survey.json",
     "report.html",
@@ -73,6 +75,8 @@ def write_survey(
         _points(survey, folder, tables, tell)
         write_csv(survey.segments, folder / "segments.csv")
         write_csv(survey.crossings, folder / "crossings.csv")
+        compared = comparisons(survey)
+        write_csv(compared, folder / "comparisons.csv")
         _skipped(survey, folder)
         (folder / "survey.json").write_text(
             json.dumps(record, indent=2, ensure_ascii=False, allow_nan=False) + "\n", encoding="utf-8"
@@ -81,7 +85,7 @@ def write_survey(
         if figures == "all":
             from aero.survey.pages import write_report
 
-            write_report(survey, record, folder, lambda step: tell("report", 0.5 * step))
+            write_report(survey, record, compared, folder, lambda step: tell("report", 0.5 * step))
         return sorted(p.relative_to(folder).as_posix() for p in folder.rglob("*") if p.is_file())
 
 

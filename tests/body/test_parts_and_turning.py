@@ -271,7 +271,7 @@ def test_what_a_file_leaves_out(read):
             "roll =",
             r"unknown key 'attitude.roll', expected one of: angle_of_attack, sideslip, bank",
         ),
-        ('"1 mm"', "0.001", r"line 17: key 'moment.point' holds '0.001' has no unit"),
+        ('"1 mm"', "0.001", r"line 17: key 'moment.point' holds '0.001', which has no unit"),
         (', "1 mm"', "", r"'moment.point' is '.*', expected three values \(x, y, z\); write point = \["),
         ('point = ["-3 cm", "0 m", "1 mm"]\n', "", r"line 16: \[moment\] key 'point' is missing"),
         ('"0.3 m"\n[[part]]', '"0.3 m"\nnose_radius = "1 m"\n[[part]]', r"stands beside nose_radius"),
@@ -280,7 +280,7 @@ def test_what_a_file_leaves_out(read):
         ('[[part]]\nname = "core"', '[part]\nname = "core"', r"TOML"),
         ("[0, 1, 0]", "[0, 0, 0]", r"key 'part\[2\].turn.axis' is \[0, 0, 0\], expected a direction"),
         ("[0, 1, 0]", '["0 m", 1, 0]', r"key 'part\[2\].turn.axis' holds '0 m', expected a number"),
-        ('angle = "-90 deg"', "angle = 90", r"key 'part\[2\].turn.angle' holds '90' has no unit"),
+        ('angle = "-90 deg"', "angle = 90", r"key 'part\[2\].turn.angle' holds '90', which has no unit"),
         (', angle = "-90 deg"', "", r"\[part\[2\].turn\] key 'angle' is missing; add angle = \"30 deg\""),
         ("turn =", "turns =", r"line 31: unknown table 'part\[2\].turns', .* did you mean 'turn'"),
         (
