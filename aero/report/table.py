@@ -8,7 +8,7 @@ from collections.abc import Mapping, Sequence
 from typing import TYPE_CHECKING
 
 from aero.report.columns import ReadyColumn, ready
-from aero.report.names import Table, shorten
+from aero.report.names import Table, shorten, shorten_all
 from aero.report.numbers import MISSING, align_decimals, format_quantity, split_unit
 from aero.report.palette import REGIME_COLOURS, REGIME_TEXT
 
@@ -89,7 +89,7 @@ def _header(one: ReadyColumn) -> list[str]:
 def _cells(one: ReadyColumn) -> list[str]:
     if one.kind == "number":
         return align_decimals(one.cells)
-    return [shorten(cell, _LONGEST) for cell in one.cells]
+    return shorten_all(one.cells, _LONGEST)
 
 
 def _rich(deck: Sequence[ReadyColumn], title: str) -> RichTable:
