@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import os
 import unicodedata
 from collections.abc import Iterable, Mapping, Sequence
 from typing import TYPE_CHECKING, TypeAlias
@@ -88,7 +87,8 @@ def _told_apart(group: Sequence[object], limit: int) -> dict[object, str]:
     """Return beginnings, each with a stretch after it in which the names differ; else numbers."""
     shown = [visible(name) for name in group]
     head = limit // 3
-    first = max(len(os.path.commonprefix(shown)) - 2, head + 1)
+    alike = next((k for k, letters in enumerate(zip(*shown, strict=False)) if len(set(letters)) > 1), 0)
+    first = max(alike - 2, head + 1)
     for start in (first, *range(head + 1, max(map(len, shown)))):
         cuts = [f"{text[:head]}…{text[start:]}" for text in shown]
         cuts = [cut if len(cut) <= limit else f"{cut[: limit - 1]}…" for cut in cuts]
