@@ -93,7 +93,10 @@ def _quantity(axes: Axes, name: str, values: Floats, altitude: Floats) -> None:
     else:
         linear_axis(axes, "x", span(values, least=20.0), label, most=4)
     rows = thin(altitude, values)
-    axes.plot(values[rows], altitude[rows], color=palette.INK, linewidth=1.4, zorder=3, gid=name)
+    axes.plot(
+        values[rows], altitude[rows], color=palette.INK, linewidth=1.4, zorder=3, gid=name,
+        **style.dot(values, altitude),
+    )  # fmt: skip
 
 
 def _composition(axes: Axes, air: Table, species: list[str], altitude: Floats) -> None:
@@ -110,6 +113,7 @@ def _composition(axes: Axes, air: Table, species: list[str], altitude: Floats) -
         axes.plot(
             shares[k][rows], altitude[rows], color=_colour(species[k]), linewidth=1.2,
             linestyle=_DASHES[species[k]], zorder=3, gid=f"n_{species[k]}",
+            **style.dot(shares[k], altitude),
         )  # fmt: skip
         labels.avoid(shares[k][rows], altitude[rows])
     for k in shown:

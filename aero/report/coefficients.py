@@ -15,7 +15,7 @@ from matplotlib.patches import Rectangle
 from aero.arrays import Floats
 from aero.report import palette, style
 from aero.report.bands import Band, altitude_bounds, bands, fill
-from aero.report.labels import Labels
+from aero.report.labels import Labels, dense
 from aero.report.names import REFERENCE, Table, column, has_numbers, row_count, shorten, thin_air_limit
 from aero.report.scales import decade_axis, linear_axis, log_limits, span
 from aero.report.strips import regime_key
@@ -24,6 +24,7 @@ from aero.report.thin import monotone_runs, thin
 
 _LEFT, _BOTTOM, _RIGHT, _TOP, _BETWEEN = 0.62, 0.92, 0.2, 0.38, 0.72  # margins [in]
 _COLUMN_HEIGHT, _STRIP = 4.1, 0.09  # in
+_LEAST_BAND = 0.08  # in: a narrower band is not seen
 _MANY_RUNS = 40  # turns of altitude from which the band is drawn as one envelope
 # suffix of the column -> (label, line style); the bridged value comes last, on top
 _THIN = "_free_molecular"
@@ -158,14 +159,15 @@ def _curves(
     _wash(axes, upward[rows], low[rows], high[rows])
     labels = Labels(axes)
     for suffix, (_, line) in _PARTS.items():
-        axes.plot(values[suffix][rows], upward[rows], zorder=3, gid=f"curve{suffix or '_bridged'}", **line)  # type: ignore[arg-type]
+        look = line | style.dot(values[suffix], upward)
+        axes.plot(values[suffix][rows], upward[rows], zorder=3, gid=f"curve{suffix or '_bridged'}", **look)  # type: ignore[arg-type]
         labels.avoid(values[suffix][rows], upward[rows])
     _results(axes, labels, results, name, results_column, factor)
     if named:
         _name_curves(axes, labels, values, upward)
         for edge in (low, high):
             labels.avoid(edge[rows], upward[rows])
-        _name_wash(labels, low, high, upward)
+        _name_wash(labels, low, high, upward, list(values.values()))
 
 
 def _wash(axes: Axes, upward: Floats, low: Floats, high: Floats) -> None:
@@ -244,13 +246,20 @@ def _name_curves(axes: Axes, labels: Labels, values: Mapping[str, Floats], upwar
                 break
 
 
-def _name_wash(labels: Labels, low: Floats, high: Floats, upward: Floats) -> None:
-    width = np.where(np.isfinite(upward), high - low, np.nan)
-    if not np.isfinite(width).any():
-        return
-    for k in (int(np.nanargmax(width)), int(np.nanargmin(np.abs(upward - np.nanmedian(upward))))):
-        if np.isfinite(width[k]) and (
-            labels.put(low[k], upward[k], "95 % band", colour=palette.GREY, size=SMALL, sides=("left",))
-            or labels.put(high[k], upward[k], "95 % band", colour=palette.GREY, size=SMALL, sides=("right",))
-        ):
-            return
+def _name_wash(labels: Labels, low: Floats, high: Floats, upward: Floats, curves: Sequence[Floats]) -> None:
+    """Name the band beside it or, where lines leave room, in it; where it is wide, and clear of the curves."""
+    lines = [labels.inches(curve, upward) for curve in curves]
+    strangers = np.concatenate([np.empty((0, 2)), *(dense(line) for line in lines if len(line))])
+    left, right = labels.axes.get_xlim()
+    wide = (high - low) / (right - left) * (labels.frame[2] - labels.frame[0]) > _LEAST_BAND
+    good = np.flatnonzero(wide & np.isfinite(upward))
+    some = good[:: max(1, good.size // 60)]
+    order = some[np.argsort((low - high)[some], kind="stable")].tolist()
+    for edges in ((low, high), (high, low)):  # outside first; then inside, from its edges on
+        for k in order:
+            for edge, side in zip(edges, ("left", "right"), strict=True):
+                if labels.put(
+                    float(edge[k]), float(upward[k]), "95 % band", colour=palette.GREY, size=SMALL,
+                    sides=(side,), strangers=strangers,
+                ):  # fmt: skip
+                    return

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 import unicodedata
-from collections.abc import Iterable, Mapping
+from collections.abc import Iterable, Mapping, Sequence
 from typing import TYPE_CHECKING, TypeAlias
 
 import numpy as np
@@ -59,6 +59,44 @@ def shorten(text: object, limit: int) -> str:
         return shown
     head = (limit - 1 + 1) // 2
     return f"{shown[:head]}…{shown[len(shown) - (limit - 1 - head) :]}"
+
+
+def shorten_all(names: Sequence[object], limit: int) -> list[str]:
+    """Return names of at most `limit` characters each, names that differ still different.
+
+    Where a cut in the middle would make two alike, both are cut elsewhere; where no cut tells them apart they
+    are numbered.
+
+    Examples
+    --------
+    >>> shorten_all(["antenna_boom_a_tip_fairing", "antenna_boom_b_tip_fairing", "nose"], 14)
+    ['ante…m_a_tip_…', 'ante…m_b_tip_…', 'nose']
+    """
+    firsts = list(dict.fromkeys(names))
+    made = {name: shorten(name, limit) for name in firsts}
+    alike: dict[str, list[object]] = {}
+    for name, short in made.items():
+        alike.setdefault(short, []).append(name)
+    for group in alike.values():
+        if len(group) > 1:
+            made |= _told_apart(group, limit)
+    return [made[name] for name in names]
+
+
+def _told_apart(group: Sequence[object], limit: int) -> dict[object, str]:
+    """Return beginnings, each with a stretch after it in which the names differ; else numbers."""
+    shown = [visible(name) for name in group]
+    head = limit // 3
+    alike = next((k for k, letters in enumerate(zip(*shown, strict=False)) if len(set(letters)) > 1), 0)
+    first = max(alike - 2, head + 1)
+    for start in (first, *range(head + 1, max(map(len, shown)))):
+        cuts = [f"{text[:head]}…{text[start:]}" for text in shown]
+        cuts = [cut if len(cut) <= limit else f"{cut[: limit - 1]}…" for cut in cuts]
+        if len(set(cuts)) == len(cuts):
+            return dict(zip(group, cuts, strict=True))
+    return {
+        name: f"{shorten(name, limit - len(str(count)) - 1)} {count}" for count, name in enumerate(group, 1)
+    }
 
 
 def column(table: Table, name: str) -> Floats:

@@ -17,7 +17,7 @@ from aero.report.names import (
     column,
     length_names,
     length_sizes,
-    shorten,
+    shorten_all,
 )
 from aero.report.numbers import format_number, format_quantity
 from aero.report.pieces import NO_TIME, Along, draw_pieces, limits_along, pieces_of, run_along
@@ -68,15 +68,15 @@ def figure_strips(
     names = sorted((n for n in length_names(points) if n in sizes), key=lambda n: _rank(sizes[n]))
     along = run_along(points)
     rows = {name: pieces_of(points, segments, name, along) for name in names}
-    captions = {name: _caption(name, sizes[name]) for name in names}
-    frame = _Frame(size, ax, list(captions.values()))
+    captions = [_caption(short, sizes[n]) for n, short in zip(names, shorten_all(names, 24), strict=True)]
+    frame = _Frame(size, ax, captions)
     notes = [lay_out(rows[name], limits_along(along), frame.wide, frame.row) for name in names]
     figure, axes, middles, half = frame.axes(notes)
     linear_axis(axes, "x", limits_along(along), along.label, most=9)
     for name, middle, layout in zip(names, middles, notes, strict=True):
         draw_pieces(axes, rows[name], middle, half)
         draw_notes(axes, layout, middle, half)
-    axes.set_yticks(middles, list(captions.values()))
+    axes.set_yticks(middles, captions)
     altitude_scale(axes, along.places, column(points, "altitude_m"))
     if ax is None:
         shares = any(np.isfinite(piece.share) for pieces in rows.values() for piece in pieces)
@@ -98,7 +98,7 @@ def _rank(size: float) -> float:
 
 def _caption(name: str, size: float) -> str:
     length = f"  {format_quantity(size, 'm')}" if np.isfinite(size) else ""
-    return shorten(name, 24) + length
+    return name + length
 
 
 class _Frame:

@@ -13,14 +13,16 @@ from collections import Counter
 from collections.abc import Callable, Iterator
 from contextlib import contextmanager
 from pathlib import Path
-from typing import ParamSpec, TypeVar
+from typing import Any, ParamSpec, TypeVar
 
 import matplotlib as mpl
+import numpy as np
 from matplotlib.axes import Axes
 from matplotlib.figure import Figure
 from matplotlib.font_manager import FontProperties
 from matplotlib.textpath import text_to_path
 
+from aero.arrays import Floats
 from aero.report import palette
 from aero.report.names import shorten, visible
 
@@ -192,6 +194,12 @@ def footer_text(
         visible(digest)[:8],
     )
     return "  ·  ".join(part for part in parts if part)
+
+
+def dot(*series: Floats) -> dict[str, Any]:
+    """Return a marker for a line of one point only, which would not be seen otherwise."""
+    alone = np.isfinite(np.stack(series)).all(axis=0).sum() == 1
+    return {"marker": "o", "markersize": 3.6} if alone else {}
 
 
 @functools.lru_cache(maxsize=4096)

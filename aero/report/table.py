@@ -8,7 +8,7 @@ from collections.abc import Mapping, Sequence
 from typing import TYPE_CHECKING
 
 from aero.report.columns import ReadyColumn, ready
-from aero.report.names import Table, shorten
+from aero.report.names import Table, shorten, shorten_all
 from aero.report.numbers import MISSING, align_decimals, format_quantity, split_unit
 from aero.report.palette import REGIME_COLOURS, REGIME_TEXT
 
@@ -18,7 +18,7 @@ if TYPE_CHECKING:
 
 WIDTH = 100  # columns
 _LONGEST = 50  # characters of one word cell; longer ones are cut in the middle
-_HEADER = 11  # columns after which a header goes on in the next line
+_HEADER = 9  # columns after which a header goes on in the next line
 _GAP = 2  # columns between two columns
 
 
@@ -65,7 +65,7 @@ def _decks(chosen: Sequence[ReadyColumn], keys: int, width: int) -> list[list[Re
 
 
 def _width(deck: Sequence[ReadyColumn]) -> int:
-    return sum(max(map(_cells_wide, _lines(one)), default=0) + _GAP for one in deck)
+    return sum(max(map(_cells_wide, _lines(one)), default=0) + _GAP for one in deck) - _GAP
 
 
 def _cells_wide(text: str) -> int:
@@ -81,7 +81,7 @@ def _lines(one: ReadyColumn) -> list[str]:
 def _header(one: ReadyColumn) -> list[str]:
     """Return a header in short lines, its unit in the last."""
     return [
-        *textwrap.wrap(one.header, _HEADER, break_on_hyphens=False),
+        *textwrap.wrap(one.header, _HEADER, break_on_hyphens=False, break_long_words=False),
         *([f"[{one.unit}]"] if one.unit else []),
     ]
 
@@ -89,7 +89,7 @@ def _header(one: ReadyColumn) -> list[str]:
 def _cells(one: ReadyColumn) -> list[str]:
     if one.kind == "number":
         return align_decimals(one.cells)
-    return [shorten(cell, _LONGEST) for cell in one.cells]
+    return shorten_all(one.cells, _LONGEST)
 
 
 def _rich(deck: Sequence[ReadyColumn], title: str) -> RichTable:

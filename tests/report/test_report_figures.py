@@ -290,6 +290,29 @@ def test_air_names_each_species_that_counts_and_leaves_out_the_rest() -> None:
         figure_air({"altitude_m": height})
 
 
+def test_a_single_point_is_a_mark_in_every_panel(capsule: SimpleNamespace) -> None:
+    one = capsule.points.iloc[100:101].assign(n_N2_m3=0.8, n_O2_m3=0.2)
+    figure = figure_air(one)
+    for gid in ("temperature_K", "density_kg_m3", "mean_free_path_m", "n_N2", "n_O2"):
+        assert by_gid(figure, gid)[0].get_marker() == "o", gid
+    for line in by_gid(figure_coefficients(one, bounds=capsule.bounds), "curve_bridged"):
+        assert line.get_marker() == "o"
+    assert by_gid(figure_air(capsule.points), "temperature_K")[0].get_marker() == "None"
+
+
+def test_the_band_of_a_coefficient_is_named_on_every_flight(any_flight: SimpleNamespace) -> None:
+    figure = figure_coefficients(any_flight.points, any_flight.crossings, bounds=any_flight.bounds)
+    assert "95 % band" in words(figure)
+
+
+def test_strips_of_names_that_differ_in_the_middle_have_captions_that_differ() -> None:
+    long = [f"thermal_protection_gap_{k}_windward_side_panel" for k in ("left", "right")]
+    flight = _flight(dict.fromkeys(long, 0.9))
+    figure = figure_strips(flight.points, None, bounds=flight.bounds)
+    captions = [label.get_text() for label in figure.axes[0].get_yticklabels()]
+    assert len(set(captions)) == 2
+
+
 def test_no_label_of_a_figure_lies_outside_it(any_flight: SimpleNamespace) -> None:
     for name, draw in FIGURES.items():
         figure = draw(any_flight, footer="f")

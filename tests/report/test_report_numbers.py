@@ -8,7 +8,7 @@ from hypothesis import given, settings
 from hypothesis import strategies as st
 
 from aero.report.labels import spread
-from aero.report.names import shorten, visible
+from aero.report.names import shorten, shorten_all, visible
 from aero.report.numbers import align_decimals, format_number, format_quantity, split_unit
 from aero.report.thin import monotone_runs, thin
 
@@ -112,3 +112,23 @@ def test_spread_labels_keep_their_order_and_distance(wanted: list[float]) -> Non
     order = sorted(range(len(wanted)), key=lambda i: wanted[i])
     steps = np.diff([places[i] for i in order])
     assert (steps >= 0.3 - 1e-6).all()
+
+
+@settings(max_examples=200, deadline=None)
+@given(st.lists(st.text("ab\x01\x80", min_size=1, max_size=40), unique=True, max_size=6), st.integers(10, 24))
+def test_shortened_names_stay_within_the_limit_and_apart(names: list[str], limit: int) -> None:
+    short = shorten_all(names, limit)
+    assert all(len(one) <= limit for one in short)
+    assert len(set(short)) == len(names)
+    assert shorten_all(names * 2, limit) == short * 2
+
+
+def test_names_alike_at_both_ends_show_where_they_differ() -> None:
+    names = [f"thermal_protection_gap_{k}_windward_side_panel" for k in ("left", "right")]
+    assert len({shorten(name, 24) for name in names}) == 1
+    short = shorten_all([*names, "nose"], 24)
+    assert short[2] == "nose"
+    assert [word for word in ("left", "right") if any(word[:2] in one for one in short[:2])] == [
+        "left",
+        "right",
+    ]

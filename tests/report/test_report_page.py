@@ -193,3 +193,39 @@ def test_the_rooms_public_names() -> None:
     assert all(callable(getattr(room, name)) or name == "SEGMENT_COLUMNS" for name in room.__all__)
     with pytest.raises(AttributeError, match="no attribute 'figure_pie'"):
         room.figure_pie  # noqa: B018
+
+
+def test_what_is_wider_than_a_narrow_window_moves_in_its_own_box(page: str) -> None:
+    """No table or drawing stands outside a box that scrolls, and every box can be reached without a mouse."""
+    boxes: list[str] = []
+    inside: dict[str, list[bool]] = {"table": [], "svg": []}
+
+    class Boxes(HTMLParser):
+        def handle_starttag(self, tag: str, attrs: list[tuple[str, str | None]]) -> None:
+            found = dict(attrs)
+            if tag == "div":
+                boxes.append(str(found.get("class")))
+                if boxes[-1] in {"wide", "draw"}:
+                    assert found.get("tabindex") == "0"
+            elif tag in inside:
+                inside[tag].append({"table": "wide", "svg": "draw"}[tag] in boxes)
+
+        def handle_endtag(self, tag: str) -> None:
+            if tag == "div":
+                boxes.pop()
+
+    Boxes().feed(page)
+    assert len(inside["table"]) == 4
+    assert len(inside["svg"]) == 2
+    assert all(inside["table"] + inside["svg"])
+    assert re.search(r"\.wide \{ overflow-x: auto;", page)
+    assert page.count("nothing is cut") == 4  # at two tables of data and two figures
+
+
+def test_segments_show_how_low_and_how_high_each_went(capsule: SimpleNamespace) -> None:
+    from aero.report import SEGMENT_COLUMNS
+    from aero.report.columns import ready
+
+    segments = capsule.segments.assign(altitude_min_m=80e3, altitude_max_m=130e3)
+    titles = [one.title for one in ready(segments, SEGMENT_COLUMNS)]
+    assert titles[2:8] == ["start [s]", "end [s]", "from [km]", "to [km]", "lowest [km]", "highest [km]"]

@@ -11,7 +11,7 @@ import numpy as np
 import pandas as pd
 import pytest
 
-from aero.report import table_text
+from aero.report import SEGMENT_COLUMNS, table_text
 from aero.report.columns import ready
 from aero.report.table import facts_text
 
@@ -120,3 +120,20 @@ def test_a_profile_keeps_its_decades_apart() -> None:
     shown = np.array([[float(word) for word in row.split()] for row in rows])
     np.testing.assert_allclose(shown[:, 0], height / 1e3)
     np.testing.assert_allclose(shown[:, 1], table["density_kg_m3"], rtol=5e-4)  # four digits shown
+
+
+def test_segments_need_one_table_for_their_numbers_and_one_for_the_method(
+    any_flight: SimpleNamespace,
+) -> None:
+    segments = any_flight.segments.assign(altitude_min_m=80e3, altitude_max_m=130e3)
+    text = table_text(segments, columns=SEGMENT_COLUMNS, keys=2)
+    assert max(map(len, text.split("\n"))) <= 100
+    numbers, methods = text.split("\n\n")
+    assert all(word in numbers for word in ("lowest", "highest", "heat load", "speed"))
+    assert methods.split()[:3] == ["length", "regime", "method"]
+
+
+def test_names_of_lengths_stay_apart_in_a_table() -> None:
+    names = [f"{'thermal_protection_' * 3}{k}{'_windward_side' * 3}" for k in "ab"]
+    rows = table_text({"length": names, "length_m": [1.0, 2.0]}).split("\n")[-2:]
+    assert rows[0].split()[0] != rows[1].split()[0]
