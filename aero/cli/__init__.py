@@ -88,7 +88,10 @@ def main() -> None:
     except click.ClickException as error:
         sys.exit(_bad_input(_usage(error)))
     except InputError as error:
-        sys.exit(_bad_input(str(error)))
+        code = _bad_input(str(error))
+        sys.stdout.flush()
+        # a reader that was stopped half-way may still have threads, which at an ordinary end abort the process
+        os._exit(code)
     except (click.Abort, KeyboardInterrupt):
         _tell("stopped; nothing was written.")
         sys.exit(130)

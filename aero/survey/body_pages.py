@@ -116,8 +116,8 @@ def heating_text(heating: SurfaceHeating, altitude: float) -> str:
     return (
         f"At {format_quantity(altitude, 'm')}: largest convective flux over the body "
         f"{format_quantity(float(here.maximum), 'W/m²')} at {place} (body axes: x forward, y right, z down). "
-        f"Radius for heating {here.radius.radius:.3g} m. Methods by element: {', '.join(methods)}. Edges, gaps, shocks that "
-        "meet the body, turbulence and shock-layer radiation are not in it."
+        f"Radius for heating {here.radius.radius:.3g} m. Methods by element: {', '.join(methods)}. Edges, gaps, "
+        "shocks that meet the body, turbulence and shock-layer radiation are not in it."
     )
 
 
