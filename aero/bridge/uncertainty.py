@@ -221,8 +221,9 @@ def heat_band(
     own 1-sigma is 4 w (1 - w) of its value midway. Cross-sections do not enter: neither limit nor their
     blend knows the free path. One-sided below: half of the continuum part for a non-catalytic wall, growing
     from nothing at 3 km/s, where the shock layer begins to dissociate, to its whole at 5 km/s (judgement).
-    Where the flux itself passes through zero with the wall at the recovery temperature, the wall's relative
-    share is held at 1, and so is that of an accommodation below its own 1-sigma.
+    The wall's share is added as a flux, not as a ratio: where the flux passes through zero with the wall at the
+    recovery temperature, the band keeps its width and holds zero. Its relative share in `contributions` is held
+    at 1 there, and so is that of an accommodation below its own 1-sigma.
     """
     total = heating.total
     v = floats(speed)
@@ -238,7 +239,7 @@ def heat_band(
         by_density = by_density + _RADIATIVE_DENSITY_EXPONENT * radiative
     bias, scatter = density_sigma
     spread = floats(accommodation_sigma)
-    by_wall = heating.by_wall_temperature * (WALL_SIGMA * inverse) * heating.wall_temperature
+    by_wall = heating.by_wall_temperature * WALL_SIGMA * heating.wall_temperature
     contributions = {
         "density bias": by_density * floats(bias),
         "density scatter": by_density * floats(scatter),
@@ -247,16 +248,17 @@ def heat_band(
         "continuum level": thick * convective_sigma(v),
         "nose radius": thick * (0.5 * radius_sigma),
         "radiative level": radiative * radiative_sigma(heating.radiative_validity),
-        "wall": np.clip(by_wall, -1.0, 1.0),
     }
     dissociated = np.clip((v - 3000.0) / 2000.0, 0.0, 1.0)
     below = (
         {"non-catalytic wall": -np.log1p(thick * dissociated * (NON_CATALYTIC - 1.0))} if catalytic else {}
     )
     band = _band(total, contributions, below, {})
-    low = np.where(resting, total, np.minimum(band.low, band.high))
-    high = np.where(resting, total, np.maximum(band.low, band.high))
-    return Band(low, high, contributions, below, {})
+    reach = COVERAGE * by_wall
+    low = total - np.hypot(total - np.minimum(band.low, band.high), reach)
+    high = total + np.hypot(np.maximum(band.low, band.high) - total, reach)
+    contributions["wall"] = np.clip(by_wall * inverse, -1.0, 1.0)
+    return Band(np.where(resting, total, low), np.where(resting, total, high), contributions, below, {})
 
 
 def _band(

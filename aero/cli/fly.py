@@ -56,6 +56,11 @@ if TYPE_CHECKING:
 )
 @click.option("--angle-of-attack", type=shared.Quantity("angle", "10deg"), help="Held all the way.")
 @click.option(
+    "--bank",
+    type=shared.Quantity("angle", "20deg"),
+    help="Turns lift about the velocity, positive to the right; held all the way.",
+)
+@click.option(
     "--until", metavar="300s|DATE", help="End at the latest at this time, or at a date where --date is given."
 )
 @click.option(
@@ -98,6 +103,7 @@ def command(**options: Any) -> None:
         epoch=options["date"],
         ballistic_coefficient=options["ballistic_coefficient"],
         angle_of_attack=options["angle_of_attack"],
+        bank=options["bank"],
         database=_database(options),
         settings=shared.settings_from(**options),
         until=_until(options),

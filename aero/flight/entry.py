@@ -54,6 +54,7 @@ def fly(
     epoch: np.datetime64 | None = None,
     ballistic_coefficient: float | None = None,
     angle_of_attack: float | None = None,
+    bank: float | None = None,
     database: Database | None = None,
     settings: Settings | None = None,
     until: float | None = None,
@@ -86,7 +87,9 @@ def fly(
     ballistic_coefficient : float, optional [kg/m2]
         A constant m/(C_D A) in place of the vehicle's drag and lift.
     angle_of_attack : float, optional [rad]
-        Held all the way; the vehicle's own when None. The bank angle is 0: lift acts in the vertical plane.
+        Held all the way; the vehicle's own when None.
+    bank : float, optional [rad]
+        Turns lift about the velocity, positive to the right, held all the way; the vehicle's own when None.
     database : aero.survey.database.Database, optional
         Drag, lift and heat flux between its nodes in place of the vehicle's own, which are then not computed.
     settings : aero.survey.Settings, optional
@@ -143,6 +146,7 @@ def fly(
         planet=planet,
         air=air,
         area_per_mass=area_per_mass,
+        bank=_bank(vehicle, bank),
         until=until,
         tolerance=tolerance,
     )
@@ -167,6 +171,13 @@ def fly(
         angle_of_attack=_angle(vehicle, ballistic_coefficient, angle_of_attack),
         notes=notes,
     )
+
+
+def _bank(vehicle: Vehicle | None, bank: float | None) -> float:
+    check("--bank", bank, -180.0, 180.0, "deg", scale=DEGREE)
+    if bank is not None:
+        return bank
+    return 0.0 if vehicle is None else vehicle.bank
 
 
 def _loads(

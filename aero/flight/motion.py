@@ -44,6 +44,7 @@ def integrate(
     planet: Planet,
     air: AirAlong | None = None,
     area_per_mass: AreaPerMass | None = None,
+    bank: float = 0.0,
     until: float | None = None,
     tolerance: float = 1e-10,
 ) -> Path:
@@ -59,6 +60,8 @@ def integrate(
         The air along the flight. None: a vacuum, as it is above `MODEL_TOP`.
     area_per_mass : callable, optional
         Drag and lift. None: none.
+    bank : float, optional [rad]
+        Turns lift about the velocity, held all the way; positive to the right.
     until : float, optional [s]
         Time at which the flight ends at the latest; one day when None.
     tolerance : float
@@ -76,9 +79,9 @@ def integrate(
     Notes
     -----
     r'' = g - 2 omega x v - omega x (omega x r) - (D/m) v/V + (L/m) l, with l normal to the velocity in the
-    vertical plane through it, upwards (bank angle 0). A vehicle in vertical flight has no such direction, so
-    within 1.1 degrees of the vertical lift fades to 0 in proportion; without that, lift downwards would turn
-    over and over at the vertical. DOP853 [HairerNorsettWanner1993].
+    vertical plane through it, upwards, turned by the bank angle about the velocity. A vehicle in vertical
+    flight has no such direction, so within 1.1 degrees of the vertical lift fades to 0 in proportion; without
+    that, lift downwards would turn over and over at the vertical. DOP853 [HairerNorsettWanner1993].
     On a flat world without gravity and in exponential air this gives the closed form of [AllenEggers1958].
 
     The flight has left for good when it climbs through `MODEL_TOP`, or through the higher of `CEILING` and
@@ -87,7 +90,7 @@ def integrate(
     """
     from scipy.integrate import solve_ivp
 
-    derivative = _equations(planet, air, area_per_mass)
+    derivative = _equations(planet, air, area_per_mass, bank)
     limit = DAY if until is None else until
     solution = solve_ivp(
         derivative,
@@ -113,7 +116,7 @@ def integrate(
 
 
 def _equations(
-    planet: Planet, air: AirAlong | None, area_per_mass: AreaPerMass | None
+    planet: Planet, air: AirAlong | None, area_per_mass: AreaPerMass | None, bank: float
 ) -> Callable[[float, Floats], Floats]:
     rate = planet.rotation
 
@@ -149,7 +152,9 @@ def _equations(
             up = planet.axes(latitude, longitude)[2]
             normal = up - np.sum(up * velocity) / speed**2 * velocity
             length = np.sqrt(np.sum(normal * normal))  # cosine of the flight-path angle
-            force += pressure * lift / max(length, VERTICAL) * normal
+            right = np.cross(velocity, normal) / speed
+            turned = np.cos(bank) * normal + np.sin(bank) * right
+            force += pressure * lift / max(length, VERTICAL) * turned
         return floats(force)
 
     return derivative

@@ -14,7 +14,14 @@ import aero
 from aero.errors import InputError
 from aero.survey.output import held, whole
 
-TABLES = {"points.csv", "points.parquet", "segments.csv", "crossings.csv", "survey.json"}
+TABLES = {
+    "points.csv",
+    "points.parquet",
+    "segments.csv",
+    "crossings.csv",
+    "comparisons.csv",
+    "survey.json",
+}
 
 
 def strict(text: str) -> dict[str, object]:
