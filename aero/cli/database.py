@@ -107,7 +107,7 @@ def axis_values(text: str, dimension: str, *, example: str) -> tuple[float, ...]
     help="Range or list. Default: the vehicle's own.",
 )
 @click.option(
-    "--sideslip", type=Axis("angle", "0deg,5deg"), default=(0.0,), help="Range or list. Default: 0deg."
+    "--sideslip", type=Axis("angle", "0deg,5deg"), help="Range or list. Default: the vehicle's own, or 0deg."
 )
 @click.option(
     "--out",
@@ -140,6 +140,7 @@ def command(**options: Any) -> None:
     vehicle = shared.vehicle_with(read_vehicle(options["vehicle_file"]), **options)
     axes = [options[k] for k in ("altitude", "speed", "angle_of_attack", "sideslip")]
     axes[2] = (vehicle.angle_of_attack,) if axes[2] is None else axes[2]
+    axes[3] = (vehicle.sideslip,) if axes[3] is None else axes[3]
     check_rows([len(values) for values in axes])
     air_model, why = shared.choose_atmosphere(
         missing=missing_of(options),

@@ -162,7 +162,7 @@ def database_loads(
     database : Database
         Its heat flux is that of its own air at the altitude, its coefficients too.
     angle_of_attack : float or None [rad]
-        Held all the way, without sideslip; None takes the vehicle's own.
+        Held all the way, with the vehicle's own sideslip; None takes the vehicle's own.
 
     Returns
     -------
@@ -179,11 +179,12 @@ def database_loads(
     _check_database(vehicle, database)
 
     def ask(names: tuple[str, ...], air: Air, speed: Floats) -> list[Floats]:
-        found = database.at(air.altitude, speed, angle, 0.0, columns=names)
+        found = database.at(air.altitude, speed, angle, vehicle.sideslip, columns=names)
         for values in found.values():
             missing = np.flatnonzero(np.isnan(values))
             if missing.size:
-                _outside(database, float(air.altitude[missing[0]]), float(speed[missing[0]]), angle)
+                first = missing[0]
+                _outside(database, float(air.altitude[first]), float(speed[first]), angle, vehicle.sideslip)
         return list(found.values())
 
     def area_per_mass(air: Air, speed: Floats) -> tuple[Floats, Floats]:
@@ -213,10 +214,10 @@ def _check_database(vehicle: Vehicle, database: Database) -> None:
         )
 
 
-def _outside(database: Database, altitude: float, speed: float, angle: float) -> NoReturn:
+def _outside(database: Database, altitude: float, speed: float, angle: float, sideslip: float) -> NoReturn:
     raise InputError(
         f"has no answer at {altitude / 1e3:.6g} km, {speed / 1e3:.6g} km/s, angle of attack "
-        f"{np.degrees(angle):g} deg and no sideslip; it covers {database.reach}",
+        f"{np.degrees(angle):g} deg, sideslip {np.degrees(sideslip):g} deg; it covers {database.reach}",
         source=database.source or "database",
         remedy="make one that covers the whole flight, down to the speed of the landing",
     )

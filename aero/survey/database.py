@@ -205,7 +205,7 @@ def build_database(
     altitude: ArrayLike,
     speed: ArrayLike,
     angle_of_attack: ArrayLike | None = None,
-    sideslip: ArrayLike = 0.0,
+    sideslip: ArrayLike | None = None,
     *,
     atmosphere: Atmosphere | None = None,
     settings: Settings | None = None,
@@ -222,7 +222,7 @@ def build_database(
     altitude, speed : (n,) array_like [m], [m/s]
         Ascending.
     angle_of_attack, sideslip : (n,) array_like [rad], optional
-        Ascending; the vehicle's own angle of attack and no sideslip unless given.
+        Ascending; the vehicle's own unless given.
     atmosphere : Atmosphere, optional
         The U.S. Standard Atmosphere 1976 when None.
     settings : Settings, optional
@@ -253,7 +253,8 @@ def build_database(
     from aero.air import StandardAtmosphere1976
 
     angle = vehicle.angle_of_attack if angle_of_attack is None else angle_of_attack
-    axes = tuple(np.atleast_1d(floats(values)) for values in (altitude, speed, angle, sideslip))
+    aside = vehicle.sideslip if sideslip is None else sideslip
+    axes = tuple(np.atleast_1d(floats(values)) for values in (altitude, speed, angle, aside))
     chosen = Settings() if settings is None else settings
     grid = Grid(vehicle, axes, atmosphere or StandardAtmosphere1976(), chosen, latitude, longitude, date)
     grid.check()

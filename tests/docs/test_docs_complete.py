@@ -12,13 +12,21 @@ import pytest
 import aero
 from aero.air import ATMOSPHERES
 from aero.body import SHAPES, dimensions
+from aero.body.surface import CATALYSIS, SURFACE_MODELS, Surface
 from aero.body.vehicle import BRIDGED
 from aero.bridge import BRIDGES, DEFAULTS, SIMILARITY, Bridge
 from aero.cli import COMMANDS, group
+from aero.force.gas_surface import GAS_SURFACE
+from aero.force.gas_surface_bodies import OTHER_MODELS
 from aero.gas import FREE_PATHS
 from aero.heat import CONVECTIVE
+from aero.heat.fay_riddell import TRANSPORT
 from aero.regime import METHODS, REGIMES
 from aero.survey.columns import CROSSING_COLUMNS, SEGMENT_COLUMNS, point_columns
+from aero.survey.comparisons import COMPARISON_COLUMNS, CORRELATIONS, MODELS, SWITCHES
+from aero.survey.grid import AXES
+from aero.survey.grid import COLUMNS as GRID_COLUMNS
+from aero.survey.interpolate import SCALES
 from aero.trajectory.meanings import MEANINGS
 from aero.trajectory.metadata import KEYS
 from aero.units import UNITS
@@ -38,17 +46,29 @@ def section(title: str) -> str:
 
 def test_every_points_column_has_a_row() -> None:
     table = section("### Points columns")
-    missing = [column.name for column in point_columns(["NAME"]) if f"`{column.name}`" not in table]
+    missing = [
+        column.name for column in point_columns(["NAME"], attitude=True) if f"`{column.name}`" not in table
+    ]
     assert not missing
 
 
 @pytest.mark.parametrize(
     ("title", "columns"),
-    [("### Segments columns", SEGMENT_COLUMNS), ("### Crossings columns", CROSSING_COLUMNS)],
+    [
+        ("### Segments columns", SEGMENT_COLUMNS),
+        ("### Crossings columns", CROSSING_COLUMNS),
+        ("### Comparisons columns", COMPARISON_COLUMNS),
+        ("## Aerodynamic databases", (*(axis.column for axis in AXES), *GRID_COLUMNS)),
+    ],
 )
 def test_every_column_of_the_other_tables_has_a_row(title: str, columns: tuple[str, ...]) -> None:
     table = section(title)
     assert not [name for name in columns if f"`{name}`" not in table]
+
+
+def test_every_topic_of_the_comparisons_is_named() -> None:
+    table = section("### Comparisons columns")
+    assert not [topic for topic in (MODELS, CORRELATIONS, SWITCHES) if f"`{topic}`" not in table]
 
 
 def test_every_unit_is_listed() -> None:
@@ -70,8 +90,22 @@ def test_every_key_of_the_files_is_listed() -> None:
         assert not [key for key in (*texts, *numbers) if f"`{key}`" not in vehicle]
 
 
+def test_every_key_of_bodies_and_surfaces_is_listed() -> None:
+    vehicle = section("## Vehicle files")
+    fields = {field.name for field in dataclasses.fields(Surface)}
+    angles = {"angle_of_attack", "sideslip", "bank", "tumbling"}
+    for table, keys in (("surface", fields), ("attitude", angles), ("moment", {"point", "length"})):
+        assert not [key for key in keys if f"`[{table}] {key}`" not in vehicle]
+    turned = ("[[part]] name", "[[part]] position", "[part.shape]", "[part.surface]")
+    turns = [f"[part.turn] {key}" for key in ("axis", "hinge", "angle")]
+    heating = ("[heating] nose_radius", "[heating] effective_nose_radius", "shadowing")
+    assert not [key for key in (*turned, *turns, *heating) if f"`{key}`" not in vehicle]
+    assert not [name for name in (*SURFACE_MODELS, *CATALYSIS) if f"`{name}`" not in vehicle]
+
+
 def test_every_entry_of_a_registry_is_in_the_method() -> None:
-    for registry in (ATMOSPHERES, FREE_PATHS, CONVECTIVE, BRIDGES, SIMILARITY):
+    bodies = (GAS_SURFACE, OTHER_MODELS, CATALYSIS, TRANSPORT, SCALES)
+    for registry in (ATMOSPHERES, FREE_PATHS, CONVECTIVE, BRIDGES, SIMILARITY, *bodies):
         assert not [name for name in registry if f"`{name}`" not in METHOD]
     assert not [name for name in (*REGIMES, *METHODS) if name not in METHOD]
 
