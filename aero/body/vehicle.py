@@ -144,12 +144,8 @@ class Vehicle:
                 "Friction of a mesh or of parts is not in the continuum limit; a slender body has hardly any "
                 "continuum drag without it. Give a [continuum] table."
             )
-        own = [part.name for part in self.parts if part.surface != self.surface]
-        if own:
-            found.append(
-                f"Drag and lift of the whole vehicle use its [surface] for every part; {', '.join(own)} "
-                f"{'has its' if len(own) == 1 else 'have their'} own, which the loads of parts use."
-            )
+        if self.tumbling:
+            found.append("The vehicle tumbles: drag is the average over all directions, lift is zero.")
         if self.shape is not None and not self.shadows and (self.parts or self.shape.kind == "mesh"):
             found.append("Shadowing is off: elements behind others get the flow as if they stood free.")
         return found

@@ -3,7 +3,7 @@
 from __future__ import annotations
 
 from collections.abc import Callable
-from dataclasses import dataclass
+from dataclasses import dataclass, replace
 from typing import TYPE_CHECKING, Any, NoReturn, cast
 
 import numpy as np
@@ -133,6 +133,8 @@ def vehicle_loads(
 
     chosen = Settings() if settings is None else settings
     angle = vehicle.angle_of_attack if angle_of_attack is None else angle_of_attack
+    # moments do not turn a point mass: without a point to take them about they are not computed
+    vehicle = replace(vehicle, moment_point=None)
     lengths = {"reference": vehicle.reference_length}
     loading = vehicle.reference_area / vehicle.mass
 

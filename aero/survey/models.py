@@ -9,8 +9,14 @@ from aero.heat import CONVECTIVE
 from aero.report import Model
 
 if TYPE_CHECKING:
+    from aero.body import Vehicle
     from aero.survey.one_pass import Survey
 
+_CATALYTIC = {
+    "full": "fully catalytic wall",
+    "partial": "partly catalytic wall",
+    "none": "non-catalytic wall",
+}
 FREE_PATH_TEXT = {
     "hard-sphere": (
         "1/(√2 π d² n) with d = 3.65e-10 m for every mixture",
@@ -56,7 +62,6 @@ def _drag(survey: Survey) -> list[Model]:
     vehicle = survey.vehicle
     bridge = bridge_for(vehicle, "drag")
     surface = vehicle.surface
-    accommodation = surface.energy_accommodation
     continuum = (
         Model("Continuum drag", "the vehicle file's own table", "the vehicle file")
         if vehicle.continuum is not None
@@ -72,15 +77,35 @@ def _drag(survey: Survey) -> list[Model]:
         )
     )
     return [
-        Model(
-            "Free-molecular drag",
-            f"each species with its own speed ratio; energy accommodation {accommodation}, diffuse fraction "
-            f"{surface.diffuse_fraction:g}; convex body, one reflection",
-            "Schaaf & Chambre 1958; Sentman 1961; Bird 1994",
-        ),
+        Model("Free-molecular drag", _surface(vehicle), _SURFACE_SOURCE[surface.model]),
         continuum,
         Model("Drag between", f"{bridge}: {BRIDGES[bridge.function].formula}", bridge.source),
     ]
+
+
+_SURFACE_SOURCE = {
+    "maxwell": "Schaaf & Chambre 1958; Sentman 1961; Bird 1994",
+    "cll": "Cercignani & Lampis 1971; Lord 1991",
+}
+
+
+def _surface(vehicle: Vehicle) -> str:
+    surface = vehicle.surface
+    if surface.model == "cll":
+        text = (
+            "each species with its own speed ratio; Cercignani-Lampis-Lord with normal energy accommodation "
+            f"{surface.normal_energy_accommodation:g} and tangential momentum accommodation "
+            f"{surface.tangential_momentum_accommodation:g}"
+        )
+    else:
+        text = (
+            "each species with its own speed ratio; Maxwell with energy accommodation "
+            f"{surface.energy_accommodation}, diffuse fraction {surface.diffuse_fraction:g}"
+        )
+    if vehicle.parts:
+        text += "; parts with surfaces of their own keep them"
+    shadows = "elements behind others get none of the flow" if vehicle.shadows else "shadowing off"
+    return f"{text}; {shadows}; one reflection"
 
 
 def _heat(survey: Survey) -> list[Model]:
@@ -96,7 +121,8 @@ def _heat(survey: Survey) -> list[Model]:
         ),
         Model(
             "Continuum heating",
-            f"{survey.settings.convective}, equilibrium and fully catalytic wall, hot-wall factor",
+            f"{survey.settings.convective}, equilibrium, {_CATALYTIC[survey.vehicle.surface.catalysis]}, hot-wall "
+            "factor",
             correlation.source,
         ),
         Model("Heating between", str(heat), heat.source),

@@ -47,6 +47,13 @@ def survey_record(survey: Survey) -> dict[str, Any]:
             "reference_length_m": survey.vehicle.reference_length,
             "nose_radius_m": survey.vehicle.nose_radius,
             "body_class": survey.vehicle.body_class,
+            "shape": None if survey.vehicle.shape is None else survey.vehicle.shape.kind,
+            "parts": [part.name for part in survey.vehicle.parts],
+            "shadowing": survey.vehicle.shadows,
+            "tumbling": survey.vehicle.tumbling,
+            "surface_model": survey.vehicle.surface.model,
+            "catalysis": survey.vehicle.surface.catalysis,
+            "moment_point_m": survey.vehicle.moment_point,
         },
     }
     record["summary"] = survey.summary

@@ -153,7 +153,6 @@ def test_the_example_with_a_panel():
     assert vehicle.shape.frontal_area == pytest.approx(0.0226 + 0.4 * 0.15 - 0.226 * 0.05, rel=0.01)
     folded = vehicle.with_turned("panel", 0.0)
     assert folded.shape.frontal_area == pytest.approx(0.0226, rel=1e-3)
-    assert any("panel has its own" in note for note in vehicle.notes)
     whole = vehicle.with_surface(diffuse_fraction=0.5)
     assert (
         {part.surface.diffuse_fraction for part in whole.parts} == {whole.surface.diffuse_fraction} == {0.5}
