@@ -65,7 +65,7 @@ def _plain(column: pd.Series) -> np.ndarray | pd.Categorical:
 
 
 def _unknown(values: np.ndarray) -> bool:
-    """Whether a column nobody knows: one missing value seen many times (`_frame` in one_pass.py makes them)."""
+    """Whether a column nobody knows: one missing value seen many times (`points_table` makes them)."""
     return values.strides == (0,) and values.size > 0 and bool(pd.isna(values[0]))
 
 
