@@ -108,6 +108,11 @@ class Vehicle:
         return self.shape.body_class if self.shape is not None else None
 
     @property
+    def heats(self) -> bool:
+        """Whether there is a radius to compute stagnation heating with."""
+        return self.nose_radius is not None or not isinstance(self.effective_nose_radius, bool)
+
+    @property
     def states_nose_radius(self) -> bool:
         """Whether the radius for heating was stated apart from the shape."""
         return self.heating_nose_radius is not None
@@ -216,6 +221,34 @@ class Vehicle:
             return found
         parts = (replace(part, surface=replace(part.surface, **changes)) for part in self.parts)
         return found.with_parts(tuple(parts))
+
+    def with_shadows(self, shadows: bool) -> Vehicle:
+        """Return the vehicle with shadowing on or off, its mesh and its parts included."""
+        shape = replace(self.shape, shadows=shadows) if isinstance(self.shape, Mesh) else self.shape
+        found = replace(self, shadows=shadows, shape=shape)
+        if not self.parts:
+            return found
+        return found.with_parts(
+            tuple(
+                replace(part, shape=replace(part.shape, shadows=shadows))
+                if isinstance(part.shape, Mesh)
+                else part
+                for part in self.parts
+            )
+        )
+
+    def with_model(self, model: str) -> Vehicle:
+        """Return the vehicle with another gas-surface model.
+
+        A surface that was not Cercignani-Lampis-Lord's states no coefficients of it: the normal energy then
+        accommodates as its energy does (1 for oxygen coverage), the tangential momentum wholly.
+        """
+        if model != "cll" or self.surface.model == "cll":
+            return self.with_surface(model=model)
+        alpha = self.surface.energy_accommodation
+        return self.with_surface(
+            model=model, normal_energy_accommodation=1.0 if isinstance(alpha, str) else alpha
+        )
 
     def with_catalysis(self, catalysis: str) -> Vehicle:
         """Return the vehicle with another wall catalysis, full, partial or none.

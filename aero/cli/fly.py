@@ -81,6 +81,9 @@ def command(**options: Any) -> None:
     """Fly an entry in three degrees of freedom, to the ground or out of the atmosphere again."""
     from aero.flight import fly
 
+    acting = body_options_given(options)
+    if options["vehicle_file"] is None and acting:
+        raise InputError("acts on a vehicle, and none is given", source=acting[0], remedy="drop it")
     if options["out"] is not None:
         _check_out(options)
     vehicle = None
@@ -131,22 +134,30 @@ _ASSUMED = {
 }
 
 
+def body_options_given(options: dict[str, Any]) -> list[str]:
+    """Return the options on coefficients that were given."""
+    given = {
+        "--wall-temperature": options["wall"] is not None,
+        "--perfect-gas": options["perfect_gas"],
+        "--convective": options["convective"] != "sutton-graves",
+        "--surface-model": options["surface_model"] is not None,
+        "--catalysis": options["catalysis"] is not None,
+        "--no-shadowing": options["no_shadowing"],
+    }
+    return [name for name, yes in given.items() if yes]
+
+
 def _database(options: dict[str, Any]) -> Database | None:
     """Return the database the coefficients come from; options that would act on computing them are refused."""
     if options["database_file"] is None:
         return None
-    acting = {
-        "--wall-temperature": options["wall"] is not None,
-        "--perfect-gas": options["perfect_gas"],
-        "--convective": options["convective"] != "sutton-graves",
-    }
-    for name, given in acting.items():
-        if given:
-            raise InputError(
-                "does not act on a database, whose coefficients are computed already",
-                source=name,
-                remedy="drop it, or make the database with it",
-            )
+    acting = body_options_given(options)
+    if acting:
+        raise InputError(
+            "does not act on a database, whose coefficients are computed already",
+            source=acting[0],
+            remedy="drop it, or make the database with it",
+        )
     from aero.survey.database import Database
 
     return Database.read(options["database_file"])

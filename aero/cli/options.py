@@ -2,7 +2,6 @@
 
 from __future__ import annotations
 
-import dataclasses
 from collections.abc import Callable
 from typing import TYPE_CHECKING, Any
 
@@ -208,13 +207,10 @@ def vehicle_with(vehicle: Vehicle, **options: Any) -> Vehicle:
     """Return a vehicle with what the body options replace of it."""
     changed = vehicle
     if options["surface_model"] is not None:
-        changed = changed.with_surface(model=options["surface_model"])
+        changed = changed.with_model(options["surface_model"])
     if options["catalysis"] is not None:
         changed = changed.with_catalysis(options["catalysis"])
-    if not options["no_shadowing"]:
-        return changed
-    free = dataclasses.replace(changed, shadows=False)
-    return free.with_parts(free.parts) if free.parts else free
+    return changed.with_shadows(False) if options["no_shadowing"] else changed
 
 
 def settings_from(**options: Any) -> Settings:

@@ -149,7 +149,7 @@ def vehicle_loads(
     def heat_flux(air: Air, speed: Floats) -> Floats:
         return floats(columns(air, speed)["heat_flux_W_m2"])
 
-    return area_per_mass, None if vehicle.nose_radius is None else heat_flux
+    return area_per_mass, heat_flux if vehicle.heats else None
 
 
 def database_loads(

@@ -28,7 +28,7 @@ OTHER_MODELS: dict[str, str] = {
     "maxwell-full": "diffuse, full energy accommodation",
     "maxwell": "Maxwell with the vehicle's diffuse fraction and energy accommodation",
     "oxygen-coverage": "diffuse, energy accommodation from the coverage by atomic oxygen",
-    "cll": "Cercignani-Lampis-Lord with the normal energy and tangential momentum accommodation stated",
+    "cll": "Cercignani-Lampis-Lord; normal energy as the vehicle's accommodation unless it states its own",
     "specular": "specular reflection",
 }
 """Name of a row of `other_models` -> what it stands for."""

@@ -23,6 +23,7 @@ FORCES = {
 """Column -> property of `Loads`, by the global bridge."""
 COMPARED = ("axial_force_coefficient", "normal_force_coefficient", "pitch_moment_coefficient")
 """Columns that also stand for each limit and for the local bridge, with a suffix."""
+ROUNDING = 1e-12  # of the force: what summing some thousand elements leaves of a sum that is zero
 ATTITUDE_COLUMNS = (
     *FORCES,
     *(f"{name}_{kind}" for kind in ("free_molecular", "continuum", "local") for name in COMPARED),
@@ -97,4 +98,8 @@ def attitude_columns(
         found[f"pitch_stability{tail}_per_rad"] = slopes.pitch
     assert here.globally.projected_area is not None
     found["projected_area_m2"] = here.globally.projected_area
+    size = np.abs(found["axial_force_coefficient"]) + np.abs(found["normal_force_coefficient"])
+    for name in ("side_force_coefficient", "roll_moment_coefficient", "yaw_moment_coefficient"):
+        # a symmetric body has none of these: what summing its elements leaves is rounding
+        found[name] = np.where(np.abs(found[name]) < ROUNDING * size, 0.0, found[name])
     return {name: floats(found[name]) for name in ATTITUDE_COLUMNS}

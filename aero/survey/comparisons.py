@@ -144,8 +144,7 @@ def _drag_switches(at: At) -> Iterator[Row]:
     yield at.line(SWITCHES, f"{gas} at the stagnation point", DRAG, at.again(DRAG, settings=other_gas))
     if not vehicle.parts and getattr(vehicle.shape, "kind", "") != "mesh":
         return  # a plain convex shape hides nothing from the flow
-    free = dataclasses.replace(vehicle, shadows=not vehicle.shadows)
-    changed = free.with_parts(free.parts) if free.parts else free
+    changed = vehicle.with_shadows(not vehicle.shadows)
     yield at.line(SWITCHES, f"shadowing {'off' if vehicle.shadows else 'on'}", DRAG, at.again(DRAG, changed))
     yield from _reflections(at)
 

@@ -61,6 +61,6 @@ def map_field(survey: Survey) -> dict[str, Floats]:
         "air_speed_m_s": speed,
         "dynamic_pressure_Pa": columns["dynamic_pressure_Pa"].reshape(shape),
     }
-    if survey.vehicle.nose_radius is not None:
+    if survey.vehicle.heats:
         field["heat_flux_W_m2"] = columns["heat_flux_W_m2"].reshape(shape)
     return field

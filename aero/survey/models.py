@@ -109,7 +109,7 @@ def _surface(vehicle: Vehicle) -> str:
 
 
 def _heat(survey: Survey) -> list[Model]:
-    if survey.vehicle.nose_radius is None:
+    if not survey.vehicle.heats:
         return []
     correlation = CONVECTIVE[survey.settings.convective]
     heat = bridge_for(survey.vehicle, "heating")

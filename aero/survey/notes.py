@@ -133,14 +133,16 @@ def _vehicle(vehicle: Vehicle, speed: np.ndarray, columns: Mapping[str, np.ndarr
             f"Below Mach {SLOW_MACH:g} ({where}) the Newtonian continuum limit is an extrapolation; give a "
             "[continuum] table for that part."
         )
-    if vehicle.nose_radius is None:
+    if not vehicle.heats:
         notes.append("No nose radius: stagnation heating is not computed; give [heating] nose_radius.")
         return notes
     half_angle = getattr(vehicle.shape, "half_angle", None)
-    if half_angle is not None and half_angle >= BLUNT and not vehicle.states_nose_radius:
+    chosen = vehicle.states_nose_radius or vehicle.effective_nose_radius
+    if half_angle is not None and half_angle >= BLUNT and not chosen:
         notes.append(
             "On a blunt capsule the sonic line may sit at the shoulder; its stagnation heating then follows an "
-            "effective radius larger than the nose's (Zoby & Sullivan 1966). Give it as [heating] nose_radius."
+            "effective radius larger than the nose's (Zoby & Sullivan 1966). Say effective_nose_radius = true in "
+            "[heating], or give the radius there."
         )
     flux = columns["heat_flux_W_m2"]
     if np.any(flux < 0.0):

@@ -81,6 +81,12 @@ def point(
     from aero.survey.attitude_columns import ATTITUDE_COLUMNS
 
     air_model: Atmosphere = atmosphere or StandardAtmosphere1976()
+    if vehicle is not None and vehicle.tumbling and (angle_of_attack is not None or sideslip is not None):
+        raise InputError(
+            "acts on a held attitude, and the vehicle tumbles",
+            source="--angle-of-attack" if angle_of_attack is not None else "--sideslip",
+            remedy="drop it, or take tumbling out of the vehicle file",
+        )
     check_altitudes(air_model, np.array([altitude]), source="--altitude")
     chosen = settings or Settings()
     named = dict(lengths or {})

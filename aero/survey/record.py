@@ -93,7 +93,7 @@ def results(survey: Survey) -> dict[str, Any]:
 
 def digest(record: Mapping[str, Any]) -> str:
     """Return a short hash of everything that decides a survey's numbers."""
-    deciding = {k: record[k] for k in ("inputs", "atmosphere", "options", "versions")}
+    deciding = {k: record[k] for k in ("inputs", "atmosphere", "options", "vehicle", "versions")}
     text = json.dumps(plain_json(deciding), sort_keys=True)
     return hashlib.sha256(text.encode()).hexdigest()[:8]
 

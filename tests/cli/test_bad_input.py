@@ -201,6 +201,10 @@ OTHERS: dict[str, tuple[list[str], list[str]]] = {
         ["fly", "--altitude", "120km", "--speed", "7.6km/s", "--flight-path-angle=-3deg"],
         ["--vehicle", "--ballistic-coefficient"],
     ),
+    "surface of no vehicle": (
+        [*FLY, "--flight-path-angle=-3deg", "--surface-model", "cll"],
+        ["--surface-model", "none is given"],
+    ),
     "flight into nowhere": (
         [
             "fly",

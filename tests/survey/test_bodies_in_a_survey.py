@@ -127,3 +127,44 @@ def test_a_vehicle_without_a_shape_has_nothing_to_compare(entry: Trajectory, pla
     assert comparisons(result).empty
     assert result.points["drag_coefficient"].isna().all()
     assert result.points["heat_flux_W_m2"].notna().all()
+
+
+def test_shadowing_off_reaches_a_single_mesh(tmp_path: Path) -> None:
+    import trimesh
+
+    # two cubes behind one another: the flow reaches the face of the first alone
+    parts = [
+        trimesh.creation.box(extents=(0.2,) * 3, transform=trimesh.transformations.translation_matrix(place))
+        for place in ((0.5, 0.0, 0.0), (-0.5, 0.0, 0.0))
+    ]
+    trimesh.util.concatenate(parts).export(tmp_path / "cubes.stl")
+    (tmp_path / "cubes.toml").write_text(
+        'mass = "5 kg"\n[reference]\narea = "0.04 m2"\nlength = "0.2 m"\n[shape]\nkind = "mesh"\n'
+        'file = "cubes.stl"\nunit = "m"\nbody_class = "box"\n'
+    )
+    shaded = aero.read_vehicle(tmp_path / "cubes.toml")
+    free = shaded.with_shadows(False)
+    drag = [aero.point(200e3, 7600.0, vehicle=v)["drag"]["coefficient"] for v in (shaded, free)]
+    assert drag[1] > 1.5 * drag[0]
+    assert not free.shape.shadows
+
+
+def test_cll_of_a_surface_that_states_none_takes_its_energy_accommodation(plain: Vehicle) -> None:
+    changed = plain.with_model("cll")
+    assert changed.surface.normal_energy_accommodation == plain.surface.energy_accommodation
+    assert changed.with_model("cll").surface == changed.surface
+
+
+def test_the_digest_knows_the_switches(entry: Trajectory, plain: Vehicle) -> None:
+    from aero.survey.record import survey_record
+
+    digests = {
+        survey_record(aero.survey(entry, vehicle))["digest"]
+        for vehicle in (plain, plain.with_model("cll"), plain.with_catalysis("none"))
+    }
+    assert len(digests) == 3
+
+
+def test_a_tumbling_vehicle_holds_no_attitude(plain: Vehicle) -> None:
+    with pytest.raises(aero.InputError, match=r"--angle-of-attack: acts on a held attitude"):
+        aero.point(120e3, 7600.0, vehicle=dataclasses.replace(plain, tumbling=True), angle_of_attack=0.1)
