@@ -25,6 +25,11 @@ BRIDGED: dict[str, tuple[tuple[str, ...], tuple[str, ...]]] = {
 }
 """Coefficient that [bridging] may override -> (keys of text, keys of numbers)."""
 PARTIAL = 0.01  # recombination coefficient of a partly catalytic wall where none is stated: glassy coatings, judgement
+_WHOLE_MODELS: dict[str, dict[str, Any]] = {
+    "maxwell-full": {"energy_accommodation": 1.0, "diffuse_fraction": 1.0},
+    "oxygen-coverage": {"energy_accommodation": "oxygen-coverage", "diffuse_fraction": 1.0},
+    "specular": {"diffuse_fraction": 0.0},
+}
 AREA_MISMATCH = 0.1  # relative; reference and frontal area further apart than this earn a note (judgement)
 
 
@@ -238,11 +243,20 @@ class Vehicle:
         )
 
     def with_model(self, model: str) -> Vehicle:
-        """Return the vehicle with another gas-surface model.
+        """Return the vehicle with another gas-surface model, a key of `aero.force.OTHER_MODELS`.
 
-        A surface that was not Cercignani-Lampis-Lord's states no coefficients of it: the normal energy then
-        accommodates as its energy does (1 for oxygen coverage), the tangential momentum wholly.
+        `maxwell` and `cll` take what the vehicle states; the others say all they need. A surface that was not
+        Cercignani-Lampis-Lord's states no coefficients of it: the normal energy then accommodates as its energy
+        does (1 for oxygen coverage), the tangential momentum wholly.
+
+        Examples
+        --------
+        >>> from aero.body import Sphere
+        >>> Vehicle.from_shape(Sphere(diameter=1.0)).with_model("specular").surface.diffuse_fraction
+        0.0
         """
+        if model in _WHOLE_MODELS:
+            return self.with_surface(model="maxwell", **_WHOLE_MODELS[model])
         if model != "cll" or self.surface.model == "cll":
             return self.with_surface(model=model)
         alpha = self.surface.energy_accommodation

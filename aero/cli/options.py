@@ -21,7 +21,7 @@ ATMOSPHERE_NAMES = ("standard-1976", "nrlmsise-00", "msis-2.1")
 PLACED = ("nrlmsise-00", "msis-2.1")
 ACTIVITY_NAMES = ("low", "moderate", "high", "observed")
 FREE_PATH_NAMES = ("hard-sphere", "vhs", "viscosity")
-SURFACE_MODELS = ("maxwell", "cll")
+SURFACE_MODELS = ("maxwell-full", "maxwell", "oxygen-coverage", "cll", "specular")
 CATALYSES = ("full", "partial", "none")
 CONVECTIVE_NAMES = ("sutton-graves", "detra-kemp-riddell", "brandis-johnston", "fay-riddell")
 

@@ -229,6 +229,7 @@ def test_option_texts_name_every_model() -> None:
     # the command line keeps names of its own so that help needs no model; here they are held to the registries
     from aero.air import ACTIVITIES, ATMOSPHERES
     from aero.cli import options
+    from aero.force.gas_surface_bodies import OTHER_MODELS
     from aero.gas import FREE_PATHS
     from aero.heat import CONVECTIVE
 
@@ -237,6 +238,7 @@ def test_option_texts_name_every_model() -> None:
     assert list(options.ACTIVITY_NAMES) == list(ACTIVITIES)
     assert list(options.FREE_PATH_NAMES) == list(FREE_PATHS)
     assert list(options.CONVECTIVE_NAMES) == list(CONVECTIVE)
+    assert list(options.SURFACE_MODELS) == list(OTHER_MODELS)
 
 
 def test_a_closed_pipe_is_no_error(marram: str) -> None:

@@ -10,6 +10,7 @@ import pytest
 
 import aero
 from aero.body import Vehicle
+from aero.force.gas_surface_bodies import OTHER_MODELS
 from aero.force.tumbling import tumbling_drag
 from aero.gas import flow
 from aero.survey.attitude_columns import ATTITUDE_COLUMNS
@@ -168,3 +169,15 @@ def test_the_digest_knows_the_switches(entry: Trajectory, plain: Vehicle) -> Non
 def test_a_tumbling_vehicle_holds_no_attitude(plain: Vehicle) -> None:
     with pytest.raises(aero.InputError, match=r"--angle-of-attack: acts on a held attitude"):
         aero.point(120e3, 7600.0, vehicle=dataclasses.replace(plain, tumbling=True), angle_of_attack=0.1)
+
+
+def test_every_model_of_the_table_is_what_choosing_it_gives(entry: Trajectory, plain: Vehicle) -> None:
+    table = comparisons(aero.survey(entry, plain))
+    rows = table[table["topic"] == MODELS].set_index("choice")["value"]
+    thin = aero.survey(entry, plain).points["knudsen.reference"].argmax()
+    for name, text in OTHER_MODELS.items():
+        points = aero.survey(entry, plain.with_model(name)).points
+        # the wall's temperature follows from the heat, which the model changes a little
+        assert points["drag_coefficient_free_molecular"].iloc[thin] == pytest.approx(rows[text], rel=5e-3), (
+            name
+        )
