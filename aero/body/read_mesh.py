@@ -236,6 +236,13 @@ def _check_numbers(vertices: Floats, unit: str, name: str) -> None:
 
 def _check_surface(vertices: Floats, name: str) -> None:
     points, faces = triangles.merged(vertices)
+    twice = len(faces) - len(np.unique(np.sort(faces, axis=1), axis=0))
+    if twice:
+        raise InputError(
+            f"has {twice:,} of {len(faces):,} triangles twice, expected each once",
+            source=name,
+            remedy="remove the copies; a body exported twice has twice its drag",
+        )
     found = triangles.edges(faces)
     if found.open_count:
         raise InputError(

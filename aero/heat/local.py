@@ -32,6 +32,7 @@ LEE_SHARE = 0.03  # of the stagnation point's flux, on faces the flow does not r
 AXIAL = 1e-6  # sine of the incidence below which a body of revolution counts as without
 _FACE = np.radians(20.0)  # inclination within which a face heats as one stagnation region (judgement)
 _BLUNT = 0.9  # cosine of the foremost face below which a body is sharp: no face is a stagnation region
+_FOREMOST = 0.01  # of a part's extent along the flow: what counts as its foremost edge
 _PEAK = 0.005  # of the cosine: faces this near the best facing one make up the stagnation region
 
 
@@ -201,6 +202,9 @@ def _stagnation_point(
 ) -> Floats:
     best = float(cosine[seen].max())
     if best < _BLUNT:
-        return floats(elements.centroids[seen[np.argmax(elements.centroids[seen] @ direction)]])
+        along = elements.centroids[seen] @ direction
+        # the foremost edge as a whole, not whichever of its elements comes first
+        near = seen[along >= along.max() - _FOREMOST * (along.max() - along.min())]
+        return floats(np.average(elements.centroids[near], axis=0, weights=elements.areas[near]))
     near = seen[cosine[seen] > best - _PEAK]
     return floats(np.average(elements.centroids[near], axis=0, weights=elements.areas[near]))

@@ -10,7 +10,7 @@ from aero.arrays import Floats, floats
 from aero.bridge import bridge_for
 from aero.bridge.loads import LoadsBetween, loads_between
 from aero.force.loads import STEP, stability
-from aero.survey.vehicle_columns import Passing, similarity
+from aero.survey.vehicle_columns import ROUNDING, Passing, similarity
 
 FORCES = {
     "axial_force_coefficient": "axial",
@@ -23,7 +23,6 @@ FORCES = {
 """Column -> property of `Loads`, by the global bridge."""
 COMPARED = ("axial_force_coefficient", "normal_force_coefficient", "pitch_moment_coefficient")
 """Columns that also stand for each limit and for the local bridge, with a suffix."""
-ROUNDING = 1e-12  # of the force: what summing some thousand elements leaves of a sum that is zero
 ATTITUDE_COLUMNS = (
     *FORCES,
     *(f"{name}_{kind}" for kind in ("free_molecular", "continuum", "local") for name in COMPARED),
@@ -98,8 +97,8 @@ def attitude_columns(
         found[f"pitch_stability{tail}_per_rad"] = slopes.pitch
     assert here.globally.projected_area is not None
     found["projected_area_m2"] = here.globally.projected_area
-    size = np.abs(found["axial_force_coefficient"]) + np.abs(found["normal_force_coefficient"])
-    for name in ("side_force_coefficient", "roll_moment_coefficient", "yaw_moment_coefficient"):
-        # a symmetric body has none of these: what summing its elements leaves is rounding
+    size = sum(np.abs(found[name]) for name in tuple(FORCES)[:3])
+    for name in ATTITUDE_COLUMNS:
+        # a symmetric body has none of some: what summing its elements leaves of them is rounding
         found[name] = np.where(np.abs(found[name]) < ROUNDING * size, 0.0, found[name])
     return {name: floats(found[name]) for name in ATTITUDE_COLUMNS}

@@ -28,9 +28,13 @@ MOMENT_ROWS = 8  # of the moment table, spread over the decades of Knudsen numbe
 
 
 def hottest_heating(survey: Survey) -> tuple[SurfaceHeating, float] | None:
-    """Return the heating over the body at the sample of greatest flux, and its altitude [m]; None without one."""
+    """Return the heating over the body at the sample of greatest flux, and its altitude [m].
+
+    None without a flux, without a shape, and for a vehicle that tumbles and so holds no attitude.
+    """
     flux = survey.points["heat_flux_W_m2"].to_numpy()
-    if survey.vehicle.shape is None or not np.isfinite(flux).any() or np.nanmax(flux) <= 0.0:
+    held = survey.vehicle.shape is not None and not survey.vehicle.tumbling
+    if not held or not np.isfinite(flux).any() or np.nanmax(flux) <= 0.0:
         return None
     row = int(np.nanargmax(flux))
     at = At.row(survey, row)
@@ -116,8 +120,8 @@ def heating_text(heating: SurfaceHeating, altitude: float) -> str:
     return (
         f"At {format_quantity(altitude, 'm')}: largest convective flux over the body "
         f"{format_quantity(float(here.maximum), 'W/m²')} at {place} (body axes: x forward, y right, z down). "
-        f"Radius for heating {here.radius.radius:.3g} m. Methods by element: {', '.join(methods)}. Edges, gaps, "
-        "shocks that meet the body, turbulence and shock-layer radiation are not in it."
+        f"Radius for heating {here.radius.radius:.3g} m. How elements were found: ({') ('.join(methods)}). Edges, "
+        "gaps, shocks that meet the body, turbulence and shock-layer radiation are not in it."
     )
 
 
@@ -130,6 +134,7 @@ def moment_table(survey: Survey) -> pd.DataFrame | None:
     wanted = np.geomspace(np.nanmax(knudsen), np.nanmin(knudsen), MOMENT_ROWS)
     rows = sorted({int(np.nanargmin(np.abs(np.log(knudsen / k)))) for k in wanted})
     names = (
+        "time_s",
         "altitude_m",
         "knudsen.reference",
         "axial_force_coefficient",

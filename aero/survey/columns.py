@@ -74,8 +74,10 @@ _AFTER = (
 _SPECIES = tuple(Column(f"n_{s}_m3", "1/m³", f"number density of {s}") for s in SPECIES)
 
 
+SIDESLIP = Column("sideslip_deg", "deg", "sideslip")
+"""Stands in the table of a vehicle that states a moment point, and of a trajectory that states sideslip."""
 _ATTITUDE = (
-    Column("sideslip_deg", "deg", "sideslip"),
+    SIDESLIP,
     Column("axial_force_coefficient", "1", "bridged axial force coefficient, positive towards the rear"),
     Column("normal_force_coefficient", "1", "bridged normal force coefficient, positive upwards"),
     Column("side_force_coefficient", "1", "bridged side force coefficient, positive to the right"),

@@ -17,11 +17,11 @@ from aero.air.state import Air
 from aero.arrays import Floats
 from aero.body import Vehicle
 from aero.body.surface import accommodation
-from aero.force.gas_surface_bodies import OTHER_MODELS, other_models
+from aero.force.gas_surface_bodies import OTHER_MODELS
 from aero.force.loads import flow_direction
 from aero.force.reflected_air import reflected_in_air
 from aero.gas import Flow, flow
-from aero.heat import compare_convective, heating_radius
+from aero.heat import CONVECTIVE, heating_radius
 from aero.survey.chain import conditions
 from aero.survey.inputs import Inputs, air_at
 from aero.survey.settings import Settings
@@ -33,6 +33,7 @@ COMPARISON_COLUMNS = ("topic", "choice", "time_s", "altitude_m", "quantity", "va
 MODELS, CORRELATIONS, SWITCHES = "gas-surface model", "convective correlation", "switch"
 DRAG, HEAT = "drag_coefficient", "heat_flux_W_m2"
 REFLECTION_TRIANGLES = 20_000  # above it the test particles are left to a call of their own
+QUANTITIES = (DRAG, f"{DRAG}_free_molecular", HEAT, "heat_flux_continuum_W_m2")
 RAYS = 40_000  # of them, for a drag coefficient to about 0.1 %
 
 
@@ -83,7 +84,7 @@ class At:
         inputs = block_inputs(survey.trajectory, slice(row, row + 1), survey.trajectory.utc)
         air = air_at(inputs, survey.atmosphere)
         point = survey.points.iloc[row]
-        values = {name: float(point[name]) for name in (DRAG, f"{DRAG}_free_molecular", HEAT)}
+        values = {name: float(point[name]) for name in QUANTITIES}
         wall = np.array([float(point["wall_temperature_K"])])
         time = float(point["time_s"])
         return cls(survey, inputs, air, flow(air, inputs.speed), wall, time, values)
@@ -100,6 +101,11 @@ class At:
         given = self.inputs.sideslip
         return self.survey.vehicle.sideslip if given is None else float(given[0])
 
+    @property
+    def same_wall(self) -> Settings:
+        """The survey's settings with the wall temperature it found here."""
+        return dataclasses.replace(self.survey.settings, wall=float(self.wall[0]))
+
     def again(self, quantity: str, vehicle: Vehicle | None = None, settings: Settings | None = None) -> float:
         """Return a quantity with another vehicle or other settings."""
         columns = conditions(
@@ -112,29 +118,19 @@ class At:
         )
         return float(columns[quantity][0])
 
-    def line(
-        self,
-        topic: str,
-        choice: str,
-        quantity: str,
-        value: float,
-        error: float = np.nan,
-        base: float | None = None,
-    ) -> Row:
-        """Return a row; the change is against what the survey has, or against `base`."""
-        reference = self.values[quantity] if base is None else base
+    def line(self, topic: str, choice: str, quantity: str, value: float, error: float = np.nan) -> Row:
+        """Return a row; the change is against what the survey has."""
+        reference = self.values[quantity]
         change = value / reference - 1.0 if reference else np.nan
         altitude = float(self.inputs.altitude[0])
         return topic, choice, self.time, altitude, quantity, value, change, error
 
 
 def _models(at: At) -> Iterator[Row]:
-    vehicle, quantity = at.survey.vehicle, f"{DRAG}_free_molecular"
-    found = other_models(
-        vehicle, at.air, at.moving, at.wall, accommodation(vehicle.surface, at.air), at.angle
-    )
-    for name, values in found.items():
-        yield at.line(MODELS, OTHER_MODELS[name], quantity, float(values[0]))
+    quantity = f"{DRAG}_free_molecular"
+    for name, text in OTHER_MODELS.items():
+        other = at.survey.vehicle.with_model(name)
+        yield at.line(MODELS, text, quantity, at.again(quantity, other, at.same_wall))
 
 
 def _drag_switches(at: At) -> Iterator[Row]:
@@ -177,10 +173,10 @@ def _reflections(at: At) -> Iterator[Row]:
 
 
 def _correlations(at: At) -> Iterator[Row]:
-    found = compare_convective(at.survey.vehicle, at.air, at.moving, at.wall)
-    base = float(found[at.survey.settings.convective][0])
-    for name, values in found.items():
-        yield at.line(CORRELATIONS, name, "heat_flux_continuum_W_m2", float(values[0]), base=base)
+    quantity = f"{HEAT.removesuffix('_W_m2')}_continuum_W_m2"
+    for name in CONVECTIVE:
+        settings = dataclasses.replace(at.same_wall, convective=name)
+        yield at.line(CORRELATIONS, name, quantity, at.again(quantity, settings=settings))
 
 
 def _heat_switches(at: At) -> Iterator[Row]:

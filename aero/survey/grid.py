@@ -119,8 +119,8 @@ class Grid:
                 source="--speed",
             )
         for axis, limit, nodes in zip(AXES[2:], (180.0, 90.0), angles, strict=True):
-            largest = float(np.degrees(np.abs(nodes).max()))
-            if largest > limit + 1e-9:
+            largest = float(np.degrees(nodes[np.argmax(np.abs(nodes))]))
+            if abs(largest) > limit + 1e-9:
                 raise InputError(
                     f"{largest:g} deg is out of reach, expected -{limit:g} to {limit:g} deg",
                     source=axis.option,

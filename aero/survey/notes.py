@@ -136,12 +136,21 @@ def _vehicle(vehicle: Vehicle, speed: np.ndarray, columns: Mapping[str, np.ndarr
     if not vehicle.heats:
         notes.append("No nose radius: stagnation heating is not computed; give [heating] nose_radius.")
         return notes
+    if vehicle.effective_nose_radius is True:
+        from aero.heat import heating_radius
+
+        taken = heating_radius(vehicle)
+        if taken is None or taken.sigma == 0.0:
+            notes.append(
+                "effective_nose_radius = true acts on a sphere-cone without a stated nose radius alone; here it "
+                "changes nothing. Give the radius itself."
+            )
     half_angle = getattr(vehicle.shape, "half_angle", None)
     chosen = vehicle.states_nose_radius or vehicle.effective_nose_radius
     if half_angle is not None and half_angle >= BLUNT and not chosen:
         notes.append(
             "On a blunt capsule the sonic line may sit at the shoulder; its stagnation heating then follows an "
-            "effective radius larger than the nose's (Zoby & Sullivan 1966). Say effective_nose_radius = true in "
+            "effective radius other than the nose's (Zoby & Sullivan 1966). Say effective_nose_radius = true in "
             "[heating], or give the radius there."
         )
     flux = columns["heat_flux_W_m2"]

@@ -77,6 +77,8 @@ def point(
         )
     check_angle("latitude", latitude)
     check_angle("longitude", longitude)
+    check_angle("angle of attack", angle_of_attack)
+    check_angle("sideslip", sideslip)
     from aero.air import StandardAtmosphere1976
     from aero.survey.attitude_columns import ATTITUDE_COLUMNS
 

@@ -14,7 +14,7 @@ from aero.errors import InputError
 if TYPE_CHECKING:
     from aero.trajectory import Trajectory
 
-LIMITS = {"latitude": 90.0, "longitude": 360.0}  # deg
+LIMITS = {"latitude": 90.0, "longitude": 360.0, "angle of attack": 180.0, "sideslip": 90.0}  # deg
 
 
 def check_altitudes(atmosphere: Atmosphere, altitude: Floats, *, source: str) -> None:
@@ -35,7 +35,8 @@ def check_angle(name: str, value: float | None) -> None:
     if value is not None and not abs(np.degrees(value)) <= LIMITS[name] + 1e-9:
         limit = f"{LIMITS[name]:g}"
         raise InputError(
-            f"{name} is {np.degrees(value):g} deg, expected -{limit} to {limit} deg", source=f"--{name}"
+            f"{name} is {np.degrees(value):g} deg, expected -{limit} to {limit} deg",
+            source=f"--{name.replace(' ', '-')}",
         )
 
 

@@ -13,7 +13,7 @@ from aero.body import Vehicle
 from aero.regime import REGIMES, Crossings, Track, cut_segments, extremes
 from aero.regime.track import Cubic, clock
 from aero.survey.chain import conditions
-from aero.survey.columns import CROSSING_COLUMNS, SEGMENT_COLUMNS, free_name, point_columns
+from aero.survey.columns import CROSSING_COLUMNS, SEGMENT_COLUMNS, SIDESLIP, free_name, point_columns
 from aero.survey.inputs import Inputs
 from aero.survey.loads import Load, share
 from aero.survey.methods import segment_methods
@@ -40,7 +40,10 @@ def points_table(
     data: dict[str, object] = {}
     kind = pd.CategoricalDtype(list(REGIMES), ordered=False)
     attitude = "pitch_moment_coefficient" in columns
-    for column in point_columns(list(lengths), attitude=attitude):
+    wanted = point_columns(list(lengths), attitude=attitude)
+    if trajectory.sideslip is not None and not attitude:
+        wanted.append(SIDESLIP)
+    for column in wanted:
         if column.name == "utc":
             utc = trajectory.utc
             nat = np.broadcast_to(np.datetime64("NaT", "us"), count)

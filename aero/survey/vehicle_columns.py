@@ -23,6 +23,7 @@ from aero.heat import heating_radius, stagnation
 from aero.survey.inputs import Inputs
 from aero.survey.settings import Settings
 
+ROUNDING = 1e-12  # of the drag: what summing some thousand elements leaves of a sum that is zero
 HEAT = (
     "heat_flux_W_m2",
     "heat_flux_free_molecular_W_m2",
@@ -247,4 +248,6 @@ def _lift(
         drag_bridge.width,
     )
     fraction = drag_fraction if same else bridge(similarity(passing, wall, bridge))
-    return blend(dense.lift, free.lift, fraction.value)
+    lift = blend(dense.lift, free.lift, fraction.value)
+    # where symmetry leaves none, a sum over elements leaves rounding
+    return np.where(np.abs(lift) < ROUNDING * np.abs(free.drag), 0.0, lift)

@@ -181,3 +181,40 @@ def test_every_model_of_the_table_is_what_choosing_it_gives(entry: Trajectory, p
         assert points["drag_coefficient_free_molecular"].iloc[thin] == pytest.approx(rows[text], rel=5e-3), (
             name
         )
+
+
+def test_a_mesh_that_holds_its_triangles_twice_is_refused(tmp_path: Path) -> None:
+    import trimesh
+
+    cube = trimesh.creation.box(extents=(0.2,) * 3)
+    trimesh.util.concatenate([cube, cube]).export(tmp_path / "twice.stl")
+    (tmp_path / "twice.toml").write_text(
+        'mass = "5 kg"\n[reference]\narea = "0.04 m2"\nlength = "0.2 m"\n[shape]\nkind = "mesh"\n'
+        'file = "twice.stl"\nunit = "m"\n'
+    )
+    with pytest.raises(aero.InputError, match=r"twice\.stl.*has 12 of 24 triangles twice"):
+        aero.read_vehicle(tmp_path / "twice.toml")
+
+
+def test_comparisons_of_a_tumbling_vehicle_tumble(entry: Trajectory, panelled: Vehicle) -> None:
+    result = aero.survey(entry, dataclasses.replace(panelled, tumbling=True))
+    table = comparisons(result)
+    own = table[table["choice"] == OTHER_MODELS["maxwell"]].iloc[0]
+    assert own["change"] == pytest.approx(0.0, abs=1e-9)
+
+
+def test_the_rows_of_the_survey_itself_change_nothing(entry: Trajectory, panelled: Vehicle) -> None:
+    table = comparisons(aero.survey(entry, panelled.with_catalysis("none")))
+    own = table[table["choice"].isin([OTHER_MODELS["maxwell"], "sutton-graves"])]
+    np.testing.assert_allclose(own["change"], 0.0, atol=1e-9)
+
+
+def test_a_symmetric_body_has_no_side_force(entry: Trajectory, meshed: Vehicle) -> None:
+    points = aero.survey(entry, meshed).points
+    for name in ("side_force_coefficient", "roll_moment_coefficient", "yaw_moment_coefficient"):
+        np.testing.assert_allclose(points[name], 0.0, atol=1e-9)
+
+
+def test_angles_out_of_reach(plain: Vehicle) -> None:
+    with pytest.raises(aero.InputError, match=r"--sideslip: sideslip is 120 deg, expected -90 to 90 deg"):
+        aero.point(120e3, 7600.0, vehicle=plain, sideslip=np.radians(120.0))
