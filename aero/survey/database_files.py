@@ -124,6 +124,8 @@ def read_table(path: Path) -> tuple[dict[str, Floats], dict[str, Any], str]:
                 remedy="give the file or folder that aero database wrote",
             )
         path = inside
+    if not path.exists():
+        raise InputError("no such file", source=str(path), remedy="make it with aero database")
     kind = path.suffix.lower()
     if kind not in SUFFIXES:
         raise InputError(
@@ -131,11 +133,13 @@ def read_table(path: Path) -> tuple[dict[str, Floats], dict[str, Any], str]:
         )
     try:
         table, record = _parquet(path) if kind == ".parquet" else (_csv(path), {})
-    except FileNotFoundError:
-        raise InputError("no such file", source=str(path), remedy="make it with aero database") from None
     except (OSError, ValueError) as error:
-        reason = str(error).splitlines()[0].rstrip(".")
-        raise InputError(f"cannot be read as {kind[1:]}: {reason}", source=str(path)) from None
+        reason = str(error).splitlines()[0].rstrip(". ")
+        raise InputError(
+            f"is no database that can be read as {kind[1:]} ({reason})",
+            source=str(path),
+            remedy="give the file that aero database wrote; is it a trajectory?",
+        ) from None
     return table, record, path.name
 
 

@@ -24,8 +24,8 @@ def made() -> Database:
     [
         ("no.csv", None, "no.csv: no such file; make it with aero database"),
         ("a.txt", "x", "'.txt' is not a format of a database, expected .parquet or .csv"),
-        ("a.csv", "", "cannot be read as csv"),
-        ("a.parquet", "not parquet", "cannot be read as parquet"),
+        ("a.csv", "", "can be read as csv"),
+        ("a.parquet", "not parquet", "can be read as parquet"),
         ("a.csv", "altitude_m,air_speed_m_s\n1,2\n", "has no column 'angle_of_attack_deg'"),
         ("a.csv", f"{KEYS}\n", "holds 0 rows"),
         ("a.csv", f"{KEYS}\n1,1,0,0\n1,2,0,0\n2,1,0,0\n", "holds 3 rows, expected one for each of 2 x 2 x 1 x 1"),
