@@ -24,6 +24,7 @@ _LEFT, _BOTTOM, _TOP = 0.62, 0.92, 0.62  # margins [in]
 _BETWEEN, _ROWS_APART, _BAR, _RIGHT = 0.78, 0.78, 0.11, 0.95  # in
 _TALLEST = 2.6  # in, of one view
 _PIXELS = 200  # per inch of the drawn triangles, which are kept as an image inside the SVG
+_EDGE_ON = 1e-9  # cosine below which a triangle is seen on edge
 _LIGHT = 0.16  # of lightness that faces seen edge-on lose, so that the form shows
 _ARROW = 20.0  # pt
 _UNKNOWN = "#b9b2a7"  # no answer
@@ -202,22 +203,29 @@ def _draw(axes: Axes, corners: Floats, fills: Floats, view: _View) -> None:
     first, second = seen[:, 1] - seen[:, 0], seen[:, 2] - seen[:, 0]
     normal = np.cross(first, second)
     length = np.sqrt((normal * normal).sum(axis=1))
-    facing = np.flatnonzero(normal[:, 2] > 1e-9 * length)
-    if not facing.size:
-        return
+    towards = normal[:, 2] / length
+    facing = np.flatnonzero(towards > _EDGE_ON)
     order = facing[np.argsort(seen[facing, :, 2].mean(axis=1), kind="stable")]
-    cosine = normal[order, 2] / length[order]
-    shaded = fills[order].copy()
-    shaded[:, :3] *= (1.0 - _LIGHT * (1.0 - cosine))[:, None]
-    flat = seen[order, :, :2].copy()
-    if view.flip:
-        flat[..., 0] *= -1.0
-    axes.add_collection(
-        PolyCollection(
-            list(flat), facecolors=shaded, edgecolors=shaded, linewidths=0.6, rasterized=True, gid="body"
-        ),
-        autolim=False,
-    )  # fmt: skip
+    # a sheet seen on edge is a line; behind all that faces the viewer, so that only what sticks out shows
+    for who, width in ((np.flatnonzero(np.abs(towards) <= _EDGE_ON), 1.6), (order, 0.6)):
+        if not who.size:
+            continue
+        shaded = fills[who].copy()
+        shaded[:, :3] *= (1.0 - _LIGHT * (1.0 - np.abs(towards[who])))[:, None]
+        flat = seen[who, :, :2].copy()
+        if view.flip:
+            flat[..., 0] *= -1.0
+        axes.add_collection(
+            PolyCollection(
+                list(flat),
+                facecolors=shaded,
+                edgecolors=shaded,
+                linewidths=width,
+                rasterized=True,
+                gid="body" if who is order else "edges",
+            ),
+            autolim=False,
+        )
 
 
 def _flat(view: _View, points: Floats) -> NDArray[np.float64]:

@@ -103,3 +103,13 @@ def test_wrong_shapes_are_refused():
         figure_body(np.empty((0, 3, 3)), [], [], bounds=BOUNDS)
     with pytest.raises(ValueError, match="size is 'poster'"):
         draw(size="poster")
+
+
+def test_a_sheet_seen_on_edge_is_a_line():
+    # a plate across the flow: seen from its side it is on edge, seen from the flow it is not
+    corners = np.array([[0.0, -1.0, -1.0], [0.0, 1.0, -1.0], [0.0, 1.0, 1.0], [0.0, -1.0, 1.0]])
+    sheet = corners[[[0, 1, 2], [0, 2, 3]]]
+    figure = figure_body(sheet, np.full(2, 1e5), ["slip"] * 2, bounds=(0.01, 0.1, 10.0))
+    drawn = [c.get_gid() for axes in figure.axes for c in axes.collections]
+    assert drawn.count("edges") == 2  # heat flux and regime, from the side
+    assert drawn.count("body") == 2  # and from the flow
