@@ -36,7 +36,7 @@ from aero.errors import InputError
     type=click.Choice(["all", "none"]),
     default="all",
     show_default=True,
-    help="Whether figures are drawn.",
+    help="Whether figures, and the report page made of them, are written.",
 )
 @shared.place_options
 @shared.atmosphere_options
