@@ -15,7 +15,6 @@ RADIUS = 6356766.0  # m, effective Earth radius, table 2
 PRESSURE = 101325.0  # Pa at sea level, table 2
 TEMPERATURE = 288.15  # K at sea level, table 2
 MOLAR_MASS_0 = 28.9644  # kg/kmol, mean of air at sea level, section 1.2.4
-TOP = 86e3  # m, geometric: here the diffusion equations take over
 
 LAYER_BASE = np.array([0.0, 11e3, 20e3, 32e3, 47e3, 51e3, 71e3])  # m geopotential, table 4
 LAPSE = np.array([-6.5e-3, 0.0, 1.0e-3, 2.8e-3, 0.0, -2.8e-3, -2.0e-3])  # K/m geopotential, table 4

@@ -101,11 +101,8 @@ def _draw(options: dict[str, Any], columns: dict[str, np.ndarray], footer: str) 
     check_target(target, replace=options["replace"], folder=False)
     import pandas as pd
 
-    from aero.report import figure_air, png, svg
+    from aero.report import figure_air, save_figure
 
     figure = figure_air(pd.DataFrame(columns), footer=footer, title="The atmosphere")
     with whole(target, replace=options["replace"], folder=False) as new:
-        if target.suffix.lower() == ".svg":
-            new.write_text(svg(figure), encoding="utf-8")
-        else:
-            new.write_bytes(png(figure))
+        save_figure(figure, new, target.suffix)

@@ -20,8 +20,6 @@ if TYPE_CHECKING:
     from aero.air.state import Atmosphere
     from aero.body import Vehicle
 
-KIND = "aerodynamic database"
-
 
 @dataclass(frozen=True, eq=False)
 class Database:

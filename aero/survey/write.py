@@ -30,7 +30,6 @@ OURS = (
     "figures/*.png",
 )
 """Patterns of everything a survey writes: a folder that holds anything else is not replaced."""
-FIGURE_KINDS = ("svg", "png")
 
 
 def write_survey(
